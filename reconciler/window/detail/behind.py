@@ -1,0 +1,128 @@
+"""What the detail pane says, as ready texts: the heading, what differs in sentences, the working, the coupons.
+
+One place asks the procedures and puts their answers into the window's words, so that the pane only lays out.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import Any
+
+import numpy as np
+
+from reconciler.window import figures
+from reconciler.window.detail.accounts import accounts_sheet, breaks_of
+from reconciler.window.drawings import Strip
+from reconciler.window.payments import title_of
+from reconciler.window.sheet import Sheet
+
+
+@dataclass(frozen=True)
+class Told:
+    """One break in words: what differs, the sentence about it, the tone it is set in."""
+
+    title: str
+    text: str
+    look: str
+
+
+@dataclass(frozen=True)
+class Shown:
+    """The working of a payment as the pane sets it."""
+
+    sheet: Sheet
+    strip: Strip
+    found: str
+    found_more: str
+    look: str
+    next_step: str
+
+
+_LOOKS = {"no confirmation": "silent", "no ticket": "silent", "no cash": "silent", "unexplained cash": "silent",
+          "unknown bond": "silent", "unsound terms": "silent", "settlement date": "day", "payment date": "day",
+          "trade date": "day"}  # fmt: skip
+
+
+def year_of(day: Any) -> int:
+    """The year of the morning."""
+    return int(str(np.datetime64(day.date, "Y")))
+
+
+def heading(day: Any, overview: Any, row: int) -> tuple[str, str]:
+    """The payment in one line, and who, what and when below it."""
+    item = day.items.row(row)
+    digits = int(overview.digits[row])
+    name = overview.description.text(row)
+    title = title_of(item["kind"], int(item["side"]), figures.face(int(item["face_minor"]), digits), name,
+                     f"Bank entry {item['bank_entries']}".strip())  # fmt: skip
+    parts = [item["bond"]]
+    bond_row = int(item["bond_row"])
+    if bond_row >= 0:
+        bond = day.source.bonds.row(bond_row)
+        maturity = figures.date(bond["maturity"])
+        parts += [bond["day_count"], f"matures {maturity}" if maturity else ""]
+    if item["kind"] == "trade":
+        parts += [f"{item['ticket'] or item['broker_reference']} with {item['broker'] or 'a broker not told'}"]
+    elif item["kind"] in ("coupon", "redemption"):
+        parts += [f"account {item['account']}"]
+        if not np.isnat(item["record_date"]):
+            parts += [f"held on {figures.date(item['record_date'])}"]
+    parts += [item["currency"]]
+    return title, "  ·  ".join(part for part in parts if part)
+
+
+def has_coupons(day: Any, row: int) -> bool:
+    """True when the item's bond is known."""
+    return int(day.items["bond_row"][row]) >= 0
+
+
+def accounts(day: Any, overview: Any, row: int) -> Sheet:
+    """The four accounts side by side."""
+    return accounts_sheet(day, overview, row)
+
+
+def differences(day: Any, row: int) -> list[Told]:
+    """Every break of the payment as a sentence, the most urgent first; one line when there is none."""
+    told = []
+    for one in breaks_of(day, row):
+        title = f"{one['break'][:1].upper()}{one['break'][1:]}  ·  {one['party']}"
+        told.append(Told(title, one["explanation"] or one["cause"], _LOOKS.get(one["break"], "differ")))
+    state = day.items["state"].text(row)
+    if not told:
+        text = {"due": "Everybody who speaks agrees; the cash is due today.",
+                "within tolerance": "The amounts differ by no more than the tolerance."}.get(
+                    state, "Everybody who speaks tells the same.")  # fmt: skip
+        told.append(Told(text, "", ""))
+    return told
+
+
+def bond_heading(day: Any, row: int) -> tuple[str, str]:
+    """A bond's description, and its main terms below it."""
+    bond = day.source.bonds.row(row)
+    rate = figures.decimal(int(bond["coupon_rate_e9"]), 9)
+    parts = [bond["bond"], bond["currency"], bond["kind"], f"{rate} %" if rate else "", bond["day_count"], bond["calendar"],
+             f"matures {figures.date(bond['maturity'])}" if not np.isnat(bond["maturity"]) else ""]  # fmt: skip
+    return bond["description"] or bond["bond"], "  ·  ".join(part for part in parts if part)
+
+
+def working(day: Any, row: int) -> Shown:
+    """How the payment is reckoned, what was found, what to do next."""
+    from reconciler.window.detail.working import working_sheet
+
+    found = breaks_of(day, row)
+    first = found[0] if found else None
+    tone = {"proved": "", "likely": "day"}.get(first["certainty"], "differ") if first else ""
+    return Shown(working_sheet([], ""), Strip(), first["explanation"] if first else "", "", tone,
+                 first["next_step"] if first else "")  # fmt: skip
+
+
+def coupons(day: Any, row: int) -> tuple[Sheet, Strip]:
+    """The coupons of the payment's bond."""
+    return bond_coupons(day, int(day.items["bond_row"][row]), row)
+
+
+def bond_coupons(day: Any, bond_row: int, item_row: int = -1) -> tuple[Sheet, Strip]:
+    """A bond's coupons as list and strip."""
+    from reconciler.window.static import static_sheet
+
+    return static_sheet([("Coupon", 100, False, 1)], []), Strip()

@@ -1,0 +1,194 @@
+"""Below the list stands what lies behind its current row: the four accounts, the working, the bond's coupons.
+
+The pane asks `behind` (detail/behind.py) for ready texts and sets them; a row's detail is made when the row becomes current and
+its tab is looked at, never for the whole list.
+"""
+
+from __future__ import annotations
+
+from typing import Any
+
+from PySide6.QtCore import Qt, Signal
+from PySide6.QtWidgets import QFrame, QHBoxLayout, QScrollArea, QStackedWidget, QTabBar, QVBoxLayout, QWidget
+
+from reconciler.window.detail import behind
+from reconciler.window.drawings import CouponStrip
+from reconciler.window.table import SheetView
+from reconciler.window.widgets import Empty, Notice, label
+
+TABS = ("accounts", "working", "coupons")
+
+
+class DetailPane(QFrame):
+    """The detail of one payment."""
+
+    back = Signal()
+
+    def __init__(self) -> None:
+        super().__init__()
+        self.setObjectName("card")
+        self.setAccessibleName("Detail of the payment")
+        self.title, self.subtitle = label("", "heading", selectable=True), label("", "soft", selectable=True)
+        self.tabs = QTabBar()
+        self.tabs.setAccessibleName("Parts of the detail")
+        self.tabs.setDrawBase(False)
+        self.tabs.setExpanding(False)
+        for text in ("The four accounts", "Working", "Coupons"):
+            self.tabs.addTab(text)
+        self.facts = _list("The four accounts")
+        self.working = _list("Working", two_lines=True)
+        self.coupons = _list("Coupons of this bond")
+        self.strip, self.wide_strip = CouponStrip(), CouponStrip()
+        self.proof, self.next_step = Notice(), label("", "", wrap=True, selectable=True)
+        self.differs = QVBoxLayout()
+        self.pages = QStackedWidget()
+        self.pages.addWidget(self._accounts_page())
+        self.pages.addWidget(self._working_page())
+        self.pages.addWidget(self._coupons_page())
+        self.nothing = Empty("Nothing chosen", "Choose a payment in the list to see what lies behind it.")
+        self._day: Any = None
+        self._overview: Any = None
+        self._row = -1
+        self._made: set[int] = set()
+        self.body = QWidget()
+        inside = QVBoxLayout(self.body)
+        inside.setContentsMargins(20, 14, 20, 0)
+        inside.setSpacing(3)
+        inside.addWidget(self.title)
+        inside.addWidget(self.subtitle)
+        inside.addSpacing(4)
+        inside.addWidget(self.tabs)
+        column = QVBoxLayout(self)
+        column.setContentsMargins(1, 1, 1, 8)
+        column.setSpacing(0)
+        column.addWidget(self.body)
+        line = QFrame()
+        line.setObjectName("rule")
+        column.addWidget(line)
+        column.addWidget(self.pages, 1)
+        column.addWidget(self.nothing, 1)
+        self.tabs.currentChanged.connect(self._tab_changed)
+        self.show_row(None, None, -1)
+
+    def show_row(self, day: Any, overview: Any, item_row: int) -> None:
+        """Shows the detail of an item (-1: none)."""
+        self._day, self._overview, self._row = day, overview, item_row
+        self._made = set()
+        there = day is not None and item_row >= 0
+        self.body.setVisible(there)
+        self.pages.setVisible(there)
+        self.nothing.setVisible(not there)
+        if there:
+            title, subtitle = behind.heading(day, overview, item_row)
+            self.title.setText(title)
+            self.subtitle.setText(subtitle)
+            has_coupons = behind.has_coupons(day, item_row)
+            self.tabs.setTabEnabled(2, has_coupons)
+            if not has_coupons and self.tabs.currentIndex() == 2:
+                self.tabs.setCurrentIndex(0)
+            self._tab_changed(self.tabs.currentIndex())
+
+    def show_tab(self, key: str) -> None:
+        """Shows one of TABS."""
+        self.tabs.setCurrentIndex(TABS.index(key))
+
+    def current_list(self) -> SheetView:
+        """The list on the shown tab."""
+        return (self.facts, self.working, self.coupons)[self.tabs.currentIndex()]
+
+    def focus(self) -> None:
+        """Takes the keyboard: to the list on the shown tab."""
+        self.current_list().setFocus(Qt.FocusReason.ShortcutFocusReason)
+
+    def _tab_changed(self, tab: int) -> None:
+        self.pages.setCurrentIndex(tab)
+        if self._day is None or self._row < 0 or tab in self._made:
+            return
+        self._made.add(tab)
+        (self._fill_accounts, self._fill_working, self._fill_coupons)[tab]()
+
+    def _fill_accounts(self) -> None:
+        self.facts.set_sheet(behind.accounts(self._day, self._overview, self._row))
+        while self.differs.count():
+            old = self.differs.takeAt(0).widget()
+            if old is not None:
+                old.deleteLater()
+        for told in behind.differences(self._day, self._row):
+            notice = Notice()
+            notice.say(told.title, told.text, told.look)
+            self.differs.addWidget(notice)
+
+    def _fill_working(self) -> None:
+        shown = behind.working(self._day, self._row)
+        self.working.set_sheet(shown.sheet)
+        self.strip.show_strip(shown.strip)
+        self.proof.say(shown.found, shown.found_more, shown.look)
+        self.next_step.setText(shown.next_step or "Nothing needs to be done.")
+
+    def _fill_coupons(self) -> None:
+        sheet, strip = behind.coupons(self._day, self._row)
+        self.coupons.set_sheet(sheet)
+        self.wide_strip.show_strip(strip)
+
+    def _accounts_page(self) -> QWidget:
+        page = QWidget()
+        line = QHBoxLayout(page)
+        line.setContentsMargins(8, 6, 20, 4)
+        line.setSpacing(20)
+        line.addWidget(self.facts, 3)
+        inner = QWidget()
+        inner.setObjectName("scrolled")
+        column = QVBoxLayout(inner)
+        column.setContentsMargins(0, 0, 0, 0)
+        column.addWidget(label("What differs", "caption"))
+        self.differs.setSpacing(8)
+        column.addLayout(self.differs)
+        column.addStretch(1)
+        line.addWidget(scrolled(inner, "What differs"), 2)
+        return page
+
+    def _working_page(self) -> QWidget:
+        page = QWidget()
+        line = QHBoxLayout(page)
+        line.setContentsMargins(8, 6, 20, 4)
+        line.setSpacing(24)
+        line.addWidget(self.working, 1)
+        inner = QWidget()
+        inner.setObjectName("scrolled")
+        column = QVBoxLayout(inner)
+        column.setContentsMargins(0, 4, 0, 0)
+        column.setSpacing(8)
+        column.addWidget(self.proof)
+        column.addWidget(label("What next", "caption"))
+        column.addWidget(self.next_step)
+        column.addSpacing(8)
+        column.addWidget(label("Coupons of this bond", "caption"))
+        column.addWidget(self.strip)
+        column.addStretch(1)
+        line.addWidget(scrolled(inner, "What was found and what next"), 1)
+        return page
+
+    def _coupons_page(self) -> QWidget:
+        page = QWidget()
+        column = QVBoxLayout(page)
+        column.setContentsMargins(8, 6, 8, 4)
+        column.addWidget(self.wide_strip)
+        column.addWidget(self.coupons, 1)
+        return page
+
+
+def _list(name: str, two_lines: bool = False) -> SheetView:
+    view = SheetView(name, two_lines=two_lines)
+    view.sortable = False
+    return view
+
+
+def scrolled(inner: QWidget, name: str) -> QScrollArea:
+    """A widget that scrolls up and down when it is higher than its place."""
+    area = QScrollArea()
+    area.setAccessibleName(name)
+    area.setWidgetResizable(True)
+    area.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
+    area.setFocusPolicy(Qt.FocusPolicy.NoFocus)
+    area.setWidget(inner)
+    return area

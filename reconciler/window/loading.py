@@ -1,0 +1,104 @@
+"""From a folder and a day to lists ready to show: everything that takes time, done in a job.
+
+`load` runs the morning and prepares the lists; the window only puts them up. Nothing the window shows already is touched until
+the job has succeeded, so that a cancelled or failed load leaves all as before.
+"""
+
+from __future__ import annotations
+
+import datetime
+import re
+from collections.abc import Sequence
+from dataclasses import dataclass, field
+from pathlib import Path
+from typing import Any
+
+import numpy as np
+
+from reconciler.problems import Problem
+from reconciler.window.drawings import LadderBar
+from reconciler.window.jobs import Progress
+from reconciler.window.lists import ahead_sheet, bonds_sheet, files_sheet, rejects_sheet
+from reconciler.window.payments import payments_sheet
+from reconciler.window.sheet import Sheet
+
+
+@dataclass(frozen=True)
+class Ahead:
+    """The payments of the coming days: the list's table with the digits of each row, and the ladder's bars."""
+
+    table: Any
+    digits: np.ndarray
+    bars: Sequence[LadderBar]
+    until: Any
+
+
+@dataclass(frozen=True)
+class Loaded:
+    """A morning as the window shows it."""
+
+    folder: Path | None
+    day: Any
+    overview: Any
+    ahead: Ahead
+    sheets: dict[str, Sheet] = field(default_factory=dict)
+
+    @property
+    def problems(self) -> tuple[Problem, ...]:
+        """What was wrong with files and folder as a whole."""
+        return tuple(self.day.source.problems)
+
+
+def load(folder: Path, date: datetime.date, progress: Progress) -> Loaded:
+    """Runs the morning of a folder and prepares its lists; raises KnownError when nothing can be reconciled."""
+    from reconciler.procedures import ahead, morning
+
+    day = morning.run(folder, date, progress=lambda step, done=0, total=0: progress(step, done, total))
+    progress("Looking ahead", 0, 0)
+    return arrange(folder, day, ahead.ahead(day))
+
+
+def arrange(folder: Path | None, day: Any, coming: Any) -> Loaded:
+    """The lists of a day (procedures.morning.Day) and of what lies ahead (procedures.ahead.Ahead)."""
+    from reconciler.procedures.overview import digits_of, overview
+
+    seen = overview(day)
+    year = int(str(np.datetime64(day.date, "Y")))
+    bars = [LadderBar(*bar) for bar in coming.bars]
+    ahead = Ahead(coming.payments, coming.digits, bars, coming.until)
+    sheets = {
+        "breaks": payments_sheet(day, seen, ("break",)),
+        "due": payments_sheet(day, seen, ("due",)),
+        "agreed": payments_sheet(day, seen, ("agrees", "within tolerance")),
+        "bonds": bonds_sheet(day.source.bonds),
+        "files": files_sheet(day.source.totals, digits_of(day.source.totals["currency"])),
+        "rejects": rejects_sheet(day.source.rejects),
+        "ahead": ahead_sheet(ahead.table, ahead.digits, year),
+    }
+    return Loaded(folder, day, seen, ahead, sheets)
+
+
+def prepare(loaded: Loaded, progress: Progress) -> None:
+    """Ranks and indexes every list, so that later clicks do not wait; runs in a job of its own after the first paint."""
+    for sheet in loaded.sheets.values():
+        progress("Preparing the lists", 0, 0)
+        sheet.prepare()
+
+
+def date_of_folder(folder: Path) -> datetime.date | None:
+    """The day a folder's name tells, as 2026-03-31 or 20260331."""
+    found = re.search(r"(\d{4})-?(\d{2})-?(\d{2})", folder.name)
+    try:
+        return datetime.date(*(int(part) for part in found.groups())) if found else None
+    except ValueError:
+        return None
+
+
+def sample_mornings() -> list[Path]:
+    """The invented mornings that come with the program, the earliest first; empty when they were not installed."""
+    from reconciler import resources
+
+    for place in (resources.folder().parent / "sample_tickets", resources.folder() / "sample_tickets"):
+        if place.is_dir():
+            return sorted(inside for inside in place.iterdir() if inside.is_dir() and date_of_folder(inside))
+    return []

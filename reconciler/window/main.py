@@ -1,0 +1,318 @@
+"""The window: navigation at the left, a page at the right, problems and progress above it.
+
+It sends intents and shows what comes back: loading, exporting and saving run as jobs (jobs.py), everything it can do is declared
+in actions.py, and what a key does is one method here. It remembers its size, its place, its colours and the last morning.
+"""
+
+from __future__ import annotations
+
+import datetime
+from pathlib import Path
+from typing import Any
+
+from PySide6.QtCore import QByteArray, QSettings, QTimer
+from PySide6.QtGui import QAction, QActionGroup, QCloseEvent, QKeySequence
+from PySide6.QtWidgets import QApplication, QHBoxLayout, QMainWindow, QMenu, QStackedWidget, QVBoxLayout, QWidget
+
+from reconciler.problems import KnownError, Problem
+from reconciler.window import figures, jobs, loading
+from reconciler.window.actions import ACTIONS, MENUS, PAGES, page_keys
+from reconciler.window.banner import Banner, Progress
+from reconciler.window.pages.ahead import AheadPage
+from reconciler.window.pages.bonds import BondsPage
+from reconciler.window.pages.files import FilesPage
+from reconciler.window.pages.page import Page
+from reconciler.window.pages.payments import PaymentsPage
+from reconciler.window.sidebar import Sidebar
+from reconciler.window.theme import icon, theme
+from reconciler.window.welcome import Welcome
+from reconciler.window.widgets import action_button, tip_of
+
+NAME = "Reconciler"
+
+
+def settings() -> QSettings:
+    """Where the window remembers things."""
+    return QSettings(QSettings.Format.IniFormat, QSettings.Scope.UserScope, NAME, NAME)
+
+
+class MainWindow(QMainWindow):
+    """The whole window."""
+
+    def __init__(self) -> None:
+        super().__init__()
+        self.loaded: loading.Loaded | None = None
+        self.job: jobs.Job | None = None
+        self.problems: tuple[Problem | str, ...] = ()
+        self.setWindowTitle(NAME)
+        self.setWindowIcon(icon("reconciler", size=64))
+        self.setMinimumSize(960, 600)
+        self.resize(1440, 900)
+        self.actions_by_key: dict[str, QAction] = {}
+        self._make_actions()
+        menu = self._make_menu()
+        entries = [(page.key, page.text, page.group, self.actions_by_key[f"page {page.key}"]) for page in PAGES]
+        self.sidebar = Sidebar(entries, menu)
+        self.banner, self.progress = Banner(), Progress()
+        self.pages: dict[str, Page] = {}
+        self.stack = QStackedWidget()
+        acts = self.actions_by_key
+        self.welcome = Welcome(action_button(acts["open"], "main"), action_button(acts["sample"]))
+        self.stack.addWidget(self.welcome)
+        self._make_pages()
+        right = QVBoxLayout()
+        right.setContentsMargins(0, 0, 0, 0)
+        right.setSpacing(0)
+        above = QVBoxLayout()
+        above.setContentsMargins(24, 12, 24, 0)
+        above.setSpacing(8)
+        above.addWidget(self.banner)
+        above.addWidget(self.progress)
+        right.addLayout(above)
+        right.addWidget(self.stack, 1)
+        ground = QWidget()
+        ground.setObjectName("ground")
+        line = QHBoxLayout(ground)
+        line.setContentsMargins(0, 0, 0, 0)
+        line.setSpacing(0)
+        line.addWidget(self.sidebar)
+        line.addLayout(right, 1)
+        self.setCentralWidget(ground)
+        self.sidebar.page_chosen.connect(self.show_page)
+        self.banner.asked.connect(self.actions_by_key["problems"].trigger)
+        self.progress.stopped.connect(self.cancel)
+        self._enable()
+        self._restore()
+
+    # --- making
+
+    def _make_actions(self) -> None:
+        for declared in ACTIONS:
+            action = QAction(declared.text, self)
+            action.setShortcuts([QKeySequence(keys) for keys in declared.keys])
+            action.setStatusTip(declared.help)
+            action.setToolTip(tip_of(action))
+            action.triggered.connect(lambda _on=False, key=declared.key: self.act(key))
+            self.actions_by_key[declared.key] = action
+            self.addAction(action)
+        for number, page in enumerate(PAGES, 1):
+            action = QAction(page.text, self)
+            action.setShortcuts([QKeySequence(keys) for keys in page_keys(number)])
+            action.setStatusTip(page.help)
+            action.setToolTip(tip_of(action))
+            action.triggered.connect(lambda _on=False, key=page.key: self.show_page(key))
+            self.actions_by_key[f"page {page.key}"] = action
+            self.addAction(action)
+        group = QActionGroup(self)
+        for key in ("system", "light", "dark"):
+            self.actions_by_key[key].setCheckable(True)
+            group.addAction(self.actions_by_key[key])
+
+    def _make_menu(self) -> QMenu:
+        whole = QMenu(self)
+        whole.setToolTipsVisible(True)
+        for name in MENUS:
+            part = whole.addMenu(name)
+            part.setToolTipsVisible(True)
+            if name == "Go":
+                part.addActions([self.actions_by_key[f"page {page.key}"] for page in PAGES])
+            for declared in (one for one in ACTIONS if one.menu == name):
+                if declared.divided:
+                    part.addSeparator()
+                part.addAction(self.actions_by_key[declared.key])
+        open_menu = QAction("Menu", self)
+        open_menu.setShortcut(QKeySequence("F10"))
+        open_menu.triggered.connect(lambda: self.sidebar.menu_button.showMenu())
+        self.addAction(open_menu)
+        return whole
+
+    def _make_pages(self) -> None:
+        acts = self.actions_by_key
+        makers = {"ahead": AheadPage, "bonds": BondsPage, "files": FilesPage}
+        for entry in PAGES:
+            made = makers[entry.key](acts) if entry.key in makers else PaymentsPage(entry.key, entry.text, acts)
+            self.pages[entry.key] = made
+            self.stack.addWidget(made)
+
+    # --- loading
+
+    def open_at_start(self, folder: Path | None = None, date: datetime.date | None = None) -> None:
+        """Loads the folder given, else the last morning, else the latest sample, else invites."""
+        kept = settings()
+        if folder is None:
+            last = str(kept.value("last/folder", ""))
+            if last and Path(last).is_dir():
+                folder, date = Path(last), _date(str(kept.value("last/date", "")))
+        if folder is None:
+            samples = loading.sample_mornings()
+            folder = samples[-1] if samples else None
+        if folder is None:
+            self.show_welcome()
+            return
+        self.load(folder, date or loading.date_of_folder(folder) or datetime.date.today())
+
+    def load(self, folder: Path, date: datetime.date) -> jobs.Job:
+        """Reads a morning beside the window and shows it when it is there."""
+        self.cancel()
+        self.banner.hide()
+        job = jobs.Job(lambda progress: loading.load(folder, date, progress), "load", self)
+        job.succeeded.connect(self.show_loaded)
+        job.failed.connect(lambda fault: self.say_failed(f"The morning in {folder.name} could not be loaded.", fault))
+        self._remember_morning = (folder, date)
+        if self.loaded is None:
+            self.welcome.loading(folder.name)
+            self.stack.setCurrentWidget(self.welcome)
+        return self.run(job, f"Reading {folder.name}")
+
+    def run(self, job: jobs.Job, words: str) -> jobs.Job:
+        """Shows a job's progress and runs it."""
+        self.job = job
+        job.progressed.connect(self.progress.tell)
+        job.ended.connect(self._job_over)
+        # work that is over at once should not flash a bar
+        QTimer.singleShot(150, lambda: self.progress.begin(words) if job.running() and self.job is job else None)
+        job.start()
+        return job
+
+    def cancel(self) -> None:
+        """Stops the running job; what is shown stays as it was."""
+        if self.job is not None:
+            self.job.cancel()
+
+    def _job_over(self) -> None:
+        self.job = None
+        self.progress.hide()
+        if self.loaded is None and self.stack.currentWidget() is self.welcome:
+            self.welcome.invite()
+
+    def show_loaded(self, loaded: loading.Loaded) -> None:
+        """Puts a morning up."""
+        self.loaded = loaded
+        self.problems = loaded.problems
+        for key, page in self.pages.items():
+            page.show_day(loaded)
+            self.sidebar.buttons[key].set_count(page.count())
+        day = loaded.day
+        totals = day.source.totals
+        files = len(set(totals["file"].to_list()))
+        rejected = int(totals["rows_rejected"].sum())
+        foot = [loaded.folder.name if loaded.folder else "", figures.count(files, "file"),
+                f"{figures.count(rejected, 'row')} rejected" if rejected else "no row rejected"]  # fmt: skip
+        self.sidebar.show_day(day.date, "\n".join(part for part in foot if part))
+        self.setWindowTitle(f"{figures.long_date(day.date)} – {NAME}")
+        if loaded.folder is not None:
+            kept = settings()
+            kept.setValue("last/folder", str(loaded.folder))
+            kept.setValue("last/date", figures.iso(day.date))
+        self._say_problems()
+        self._enable()
+        current = self.stack.currentWidget()
+        self.show_page(current.key if isinstance(current, Page) else "breaks")
+        jobs.Job(lambda progress: loading.prepare(loaded, progress), "prepare", self).start()
+
+    def _say_problems(self) -> None:
+        if not self.problems:
+            self.banner.hide()
+        elif len(self.problems) == 1:
+            self.banner.say(_sentence(self.problems[0]), more=False)
+        else:
+            rest = figures.count(len(self.problems) - 1, "other problem")
+            self.banner.say(f"{_sentence(self.problems[0])}  And {rest}.", more=True)
+
+    def say_failed(self, what: str, fault: object) -> None:
+        """Tells in plain words that something did not work; what is shown stays."""
+        if isinstance(fault, KnownError):
+            self.problems = tuple(fault.problems)
+            rest = len(self.problems) - 1
+            told = _sentence(self.problems[0]) if self.problems else str(fault)
+            self.banner.say(f"{what} {told}" + (f" And {figures.count(rest, 'other problem')}." if rest > 0 else ""),
+                            more=rest > 0, bad=True)  # fmt: skip
+        elif isinstance(fault, MemoryError):
+            self.banner.say(f"{what} There was not enough memory; close other programs and try again.", bad=True)
+        elif isinstance(fault, OSError):
+            self.banner.say(f"{what} {fault.strerror or 'The file or folder cannot be used'}"
+                            f"{f': {Path(str(fault.filename)).name}' if fault.filename else ''}. Try again when it is free.",
+                            bad=True)  # fmt: skip
+        else:
+            self.banner.say(f"{what} This is a fault of the program, not of your files; nothing was changed. "
+                            f"Note for the maker: {type(fault).__name__}: {fault}", bad=True)  # fmt: skip
+
+    # --- pages
+
+    def show_welcome(self) -> None:
+        """Shows the invitation to open a morning."""
+        self.welcome.invite()
+        self.stack.setCurrentWidget(self.welcome)
+
+    def show_page(self, key: str) -> None:
+        """Shows a page and gives its list the keyboard."""
+        if self.loaded is None:
+            return
+        self.sidebar.show_page(key)
+        self.stack.setCurrentWidget(self.pages[key])
+        self.pages[key].focus_list()
+
+    @property
+    def page(self) -> Page | None:
+        """The page that is shown, None while there is no morning."""
+        current = self.stack.currentWidget()
+        return current if isinstance(current, Page) else None
+
+    def act(self, key: str) -> None:
+        """Does what an action says; the doing is in intents.py."""
+        from reconciler.window import intents
+
+        intents.DO[key](self)
+
+    def _enable(self) -> None:
+        for declared in ACTIONS:
+            self.actions_by_key[declared.key].setEnabled(not declared.needs_day or self.loaded is not None)
+        for entry in PAGES:
+            self.actions_by_key[f"page {entry.key}"].setEnabled(self.loaded is not None)
+            self.sidebar.buttons[entry.key].setEnabled(self.loaded is not None)
+
+    # --- remembering
+
+    def _restore(self) -> None:
+        kept = settings()
+        geometry = kept.value("window/geometry")
+        if isinstance(geometry, QByteArray):
+            self.restoreGeometry(geometry)
+        for key, page in self.pages.items():
+            state = kept.value(f"window/split/{key}")
+            splitter = getattr(page, "splitter", None)
+            if splitter is not None and isinstance(state, QByteArray):
+                splitter.restoreState(state)
+        self.actions_by_key[theme().choice].setChecked(True)
+
+    def closeEvent(self, event: QCloseEvent) -> None:  # noqa: N802
+        kept = settings()
+        kept.setValue("window/geometry", self.saveGeometry())
+        for key, page in self.pages.items():
+            splitter = getattr(page, "splitter", None)
+            if splitter is not None:
+                kept.setValue(f"window/split/{key}", splitter.saveState())
+        kept.setValue("window/colours", theme().choice)
+        kept.sync()
+        jobs.stop_all()
+        super().closeEvent(event)
+
+
+def _sentence(problem: Problem | str) -> str:
+    return problem if isinstance(problem, str) else problem.sentence()
+
+
+def _date(text: str) -> datetime.date | None:
+    try:
+        return datetime.date.fromisoformat(text)
+    except ValueError:
+        return None
+
+
+def choose_theme(choice: str) -> None:
+    """Follows the system or keeps to one set of colours, and remembers it."""
+    theme().choose(choice)
+    settings().setValue("window/colours", theme().choice)
+    for widget in QApplication.topLevelWidgets():
+        if isinstance(widget, MainWindow):
+            widget.actions_by_key[theme().choice].setChecked(True)

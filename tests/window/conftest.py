@@ -1,0 +1,45 @@
+"""The window's tests run without a screen and keep what the window remembers away from the user's own."""
+
+from __future__ import annotations
+
+import os
+from collections.abc import Iterator
+from pathlib import Path
+
+import pytest
+
+os.environ.setdefault("QT_QPA_PLATFORM", "offscreen")
+
+from PySide6.QtCore import QSettings  # noqa: E402
+
+from reconciler.window import jobs  # noqa: E402
+from reconciler.window.loading import Loaded, arrange  # noqa: E402
+from reconciler.window.main import MainWindow  # noqa: E402
+from reconciler.window.theme import theme  # noqa: E402
+from tests.window import fabricated  # noqa: E402
+
+
+@pytest.fixture(autouse=True)
+def own_settings(tmp_path: Path) -> None:
+    """Settings of this test only."""
+    QSettings.setPath(QSettings.Format.IniFormat, QSettings.Scope.UserScope, str(tmp_path / "settings"))
+
+
+@pytest.fixture()
+def loaded() -> Loaded:
+    """The small fabricated morning."""
+    return arrange(None, fabricated.day(), fabricated.ahead())
+
+
+@pytest.fixture()
+def window(qtbot, loaded: Loaded) -> Iterator[MainWindow]:  # type: ignore[no-untyped-def]  # noqa: ANN001
+    """A window that shows the small morning."""
+    theme().start("light")
+    made = MainWindow()
+    qtbot.addWidget(made)
+    made.resize(1440, 900)
+    made.show()
+    made.show_loaded(loaded)
+    qtbot.waitExposed(made)
+    yield made
+    jobs.stop_all()
