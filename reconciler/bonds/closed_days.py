@@ -14,6 +14,7 @@ from __future__ import annotations
 
 import functools
 import re
+import warnings
 from dataclasses import dataclass
 from datetime import date, timedelta
 from typing import Any
@@ -37,6 +38,9 @@ WEEKDAY: Array = ((np.arange(DAYS) + _WEEKDAY_OF_FIRST) % 7).astype(np.int8)
 # The package's bare GB lists only what England, Wales, Scotland and Northern Ireland share; sterling settles by England and Wales.
 _MEANT = {"GB": "GB-ENG"}
 _CATEGORIES = ("public", "bank")
+# Banks in Hong Kong close on the general holidays, which the package lists complete as "optional"; its "public" are the statutory ones.
+_CATEGORIES_OF = {"HK": ("optional",)}
+_HALF_DAY = re.compile(r"\((from|until) \d|afternoon|half.day", re.IGNORECASE)
 
 
 @dataclass(frozen=True)
@@ -142,23 +146,29 @@ def from_package(code: str) -> tuple[Array, list[str], Array]:
     kind: Any = getattr(holidays, entity)
     if subdivision and subdivision not in kind.subdivisions:
         raise UnknownCalendar(f"'{code}' is no calendar: {entity} has no subdivision {subdivision} in the holidays package")
-    categories = tuple(c for c in _CATEGORIES if c in kind.supported_categories) or kind.supported_categories
-    years = range(max(FIRST.astype(object).year - 1, kind.start_year), min(LAST.astype(object).year + 1, kind.end_year) + 1)
+    wanted = _CATEGORIES_OF.get(entity, _CATEGORIES)
+    categories = tuple(c for c in wanted if c in kind.supported_categories) or kind.supported_categories
+    years = range(max(1969, kind.start_year), min(2101, kind.end_year) + 1)
     language = "en_US" if "en_US" in kind.supported_languages else None
-    found: Any = kind(years=years, subdiv=subdivision or None, categories=categories, language=language, expand=False)
+    with warnings.catch_warnings():
+        # The package warns where moon-based dates reach only so far; beyond that such a calendar has its fixed days.
+        warnings.simplefilter("ignore")
+        found: Any = kind(years=years, subdiv=subdivision or None, categories=categories, language=language, expand=False)
     weekend = _weekend(found)
     days, names = [], []
     for day, name in sorted(found.items()):
         number = (day - date(1970, 1, 1)).days
-        if 0 <= number < DAYS and not weekend[number]:
+        full = "; ".join(part for part in str(name).split("; ") if not _HALF_DAY.search(part))
+        if full and 0 <= number < DAYS and not weekend[number]:
             days.append(number)
-            names.append(str(name))
+            names.append(full)
     return np.array(days, np.int64), names, weekend
 
 
 def _weekend(found: Any) -> Array:
-    """The weekend of a country; a few have moved theirs in the course of the years."""
-    mask = weekends(tuple(found.weekend))
+    """The weekend of a country; a few have moved theirs in the course of the years. Where only Sunday is one, Saturday is too:
+    shops open, settlement systems do not."""
+    mask = weekends() if found.weekend <= {5, 6} else weekends(tuple(found.weekend))
     if type(found)._get_weekend.__qualname__.startswith("HolidayBase."):
         return mask
     start = date(1970, 1, 1)
@@ -182,14 +192,16 @@ def days_of(rule: str, first_year: int, last_year: int) -> list[int]:
     """The days a rule of the corrections table means, one a year at most.
 
     `2001-09-12` one date; `01-02` every year; `12-28 if Monday Tuesday` only when it falls so; `Friday from 06-19` the first
-    such weekday on or after that date.
+    such weekday on or after that date; `Easter+40` or `Easter-48` so many days from Easter Sunday.
     """
     if re.fullmatch(r"\d{4}-\d\d-\d\d", rule):
         return [(date.fromisoformat(rule) - date(1970, 1, 1)).days]
     words = rule.split()
     out = []
     for year in range(first_year, last_year + 1):
-        if len(words) == 3 and words[1] == "from":
+        if rule.startswith("Easter"):
+            day = easter(year) + int(rule.removeprefix("Easter"))
+        elif len(words) == 3 and words[1] == "from":
             start = _day(year, words[2])
             day = start + (WEEKDAYS.index(words[0]) - int(WEEKDAY[start])) % 7
         else:
@@ -198,6 +210,17 @@ def days_of(rule: str, first_year: int, last_year: int) -> list[int]:
                 continue
         out.append(day)
     return out
+
+
+def easter(year: int) -> int:
+    """Easter Sunday of the Gregorian calendar as a day number; the method of Meeus, Jones and Butcher."""
+    century, of_century = divmod(year, 100)
+    golden = year % 19
+    moon = (19 * golden + century - century // 4 - (century - (century + 8) // 25 + 1) // 3 + 15) % 30
+    week = (32 + 2 * (century % 4) + 2 * (of_century // 4) - moon - of_century % 4) % 7
+    shift = (golden + 11 * moon + 22 * week) // 451
+    month, day = divmod(moon + week - 7 * shift + 114, 31)
+    return (date(year, month, day + 1) - date(1970, 1, 1)).days
 
 
 def _day(year: int, month_and_day: str) -> int:
