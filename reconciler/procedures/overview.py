@@ -82,7 +82,7 @@ def overview(day: Any) -> Overview:
         digits=digits,
         state=state,
         net_minor=net_minor,
-        net=_net_by_currency(items["currency"], net_minor, digits),
+        net=_net_by_currency(items["currency"], net_minor, digits, item_row[order[::-1]]),
         counts=counts,
         breaks=len(breaks),
     )
@@ -137,7 +137,9 @@ def _net(items: Table, breaks: Table, broken: np.ndarray) -> np.ndarray:
     return np.where(known, np.where(known, found, 0) - terms, MISSING)
 
 
-def _net_by_currency(currency: Words, net: np.ndarray, digits: np.ndarray) -> tuple[NetDifference, ...]:
+def _net_by_currency(
+    currency: Words, net: np.ndarray, digits: np.ndarray, urgent: np.ndarray
+) -> tuple[NetDifference, ...]:
     known = np.flatnonzero((net != MISSING) & (net != 0) & (currency.codes >= 0))
     codes = currency.codes[known]
     sums = np.zeros(len(currency.values), np.int64)
@@ -146,7 +148,9 @@ def _net_by_currency(currency: Words, net: np.ndarray, digits: np.ndarray) -> tu
     out = []
     for code in np.flatnonzero(counts).tolist():
         name = str(currency.values[code].as_py())
-        place = int(digits[known[codes == code][0]])
-        out.append(NetDifference(name, int(sums[code]), place, int(counts[code])))
-    # the largest sums first; in major units, so that yen do not crowd out dollars by their missing cents only
-    return tuple(sorted(out, key=lambda n: (-abs(n.minor) * 10 ** (6 - n.digits), n.currency)))
+        places = int(digits[known[codes == code][0]])
+        out.append(NetDifference(name, int(sums[code]), places, int(counts[code])))
+    # sums of different currencies cannot be compared: the currency whose break is the most urgent stands first
+    codes, first = np.unique(currency.codes[urgent], return_index=True)
+    place = dict(zip((str(currency.values[int(c)].as_py()) for c in codes if c >= 0), first[codes >= 0].tolist(), strict=True))
+    return tuple(sorted(out, key=lambda n: (place.get(n.currency, len(urgent)), n.currency)))

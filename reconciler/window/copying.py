@@ -6,14 +6,14 @@ import numpy as np
 
 from reconciler.records import MISSING, Words
 from reconciler.window import figures
-from reconciler.window.sheet import Fact, Sheet
+from reconciler.window.sheet import Fact, Sheet, texts
 
 
 def fact_texts(sheet: Sheet, fact: Fact, rows: np.ndarray) -> list[str]:
     """One column of a copy, as text."""
     values = fact.take(sheet.data, rows)
     if isinstance(values, Words):
-        return values.to_list()
+        return texts(values)
     if fact.kind == "date":
         return [figures.iso(value) for value in values]
     numbers = np.asarray(values, np.int64).tolist()

@@ -123,7 +123,7 @@ class LadderBar:
 class CashLadder(QWidget):
     """Money in above the line and out below it, a lane per currency and a column per day; each lane has its own scale."""
 
-    LANE = 74
+    LANE, AXIS = 52, 30
 
     def __init__(self) -> None:
         super().__init__()
@@ -142,7 +142,7 @@ class CashLadder(QWidget):
         for bar in bars:
             totals[bar.currency] = totals.get(bar.currency, 0) + bar.payments
         self.currencies = sorted(totals, key=lambda name: (-totals[name], name))
-        self.setMinimumHeight(len(self.currencies) * self.LANE + 30)
+        self.setMinimumHeight(len(self.currencies) * self.LANE + self.AXIS)
         self.setAccessibleDescription("; ".join(self.words(bar) for bar in bars[:40]))
         self.update()
 
@@ -161,7 +161,8 @@ class CashLadder(QWidget):
         step = (right - left) / max(len(self.days), 1)
         for lane, currency in enumerate(self.currencies):
             mine = [bar for bar in self.bars if bar.currency == currency]
-            self._lane(painter, mine, QRect(left, 6 + lane * self.LANE, right - left, self.LANE - 12), step)
+            high = min((self.height() - self.AXIS) / len(self.currencies), 96)
+            self._lane(painter, mine, QRect(left, int(6 + lane * high), right - left, int(high - 14)), step)
         painter.setFont(look.font("small"))
         painter.setPen(look.colour("soft"))
         metrics = painter.fontMetrics()
@@ -169,8 +170,11 @@ class CashLadder(QWidget):
         every = max(1, int(np.ceil((metrics.horizontalAdvance("30 Mar") + 14) / step)))
         for number, day in enumerate(self.days):
             if number % every == 0:
-                room = QRectF(left + number * step - 40, self.height() - 24, step + 80, 20)
+                room = QRectF(left + number * step - 40, self._axis_top(), step + 80, 20)
                 painter.drawText(room, Qt.AlignmentFlag.AlignCenter, figures.date(day, year))
+
+    def _axis_top(self) -> float:
+        return min((self.height() - self.AXIS) / len(self.currencies), 96) * len(self.currencies) + 6
 
     def _lane(self, painter: QPainter, bars: list[LadderBar], room: QRect, step: float) -> None:
         look = theme()
@@ -178,10 +182,10 @@ class CashLadder(QWidget):
         net = sum(bar.received - bar.paid for bar in bars)
         painter.setFont(look.font("body", SEMIBOLD))
         painter.setPen(look.colour("ink"))
-        painter.drawText(QRect(0, room.top() + 8, 108, 20), Qt.AlignmentFlag.AlignLeft, bars[0].currency)
+        painter.drawText(QRect(0, room.center().y() - 19, 108, 20), Qt.AlignmentFlag.AlignLeft, bars[0].currency)
         painter.setFont(look.font("small"))
         painter.setPen(look.colour("soft"))
-        painter.drawText(QRect(0, room.top() + 28, 114, 18), Qt.AlignmentFlag.AlignLeft,
+        painter.drawText(QRect(0, room.center().y() + 1, 114, 18), Qt.AlignmentFlag.AlignLeft,
                          figures.amount(net, digits, signed=True).rsplit(".", 1)[0])  # fmt: skip
         most_in, most_out = max(bar.received for bar in bars), max(bar.paid for bar in bars)
         span = max(most_in + most_out, 1)

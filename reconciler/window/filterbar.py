@@ -38,13 +38,12 @@ class FilterBar(QWidget):
         self._line = QHBoxLayout(self)
         self._line.setContentsMargins(0, 0, 0, 0)
         self._line.setSpacing(6)
-        self._line.addStretch(1)
         self._count = label("", "small")
         self._count.setAccessibleName("Rows shown")
         self._clear = button("Show all", "plain", "Clear the search and every filter (Esc in the list)")
         self._clear.clicked.connect(self.cleared)
-        self._line.addWidget(self._clear)
         self._line.addWidget(self._count)
+        self._line.addWidget(self._clear)
 
     def set_sheet(self, sheet: Sheet) -> None:
         """Offers the filters of a list."""
@@ -59,7 +58,7 @@ class FilterBar(QWidget):
             menu = StayMenu(made)
             menu.aboutToShow.connect(lambda menu=menu, facet=facet: self._fill(menu, facet))
             made.setMenu(menu)
-            self._line.insertWidget(place, made)
+            self._line.insertWidget(place + 2, made)
             self._buttons[facet.key] = made
         self.refresh()
 
@@ -75,8 +74,8 @@ class FilterBar(QWidget):
             restyle(made, on="true" if words else "false")
         narrowed = sheet.narrowed()
         self._clear.setVisible(narrowed)
-        shown = figures.count(len(sheet.shown), self._noun)
-        self._count.setText(f"{len(sheet.shown):,} of {figures.count(sheet.length, self._noun)}" if narrowed else shown)
+        self._count.setVisible(narrowed)
+        self._count.setText(f"{len(sheet.shown):,} of {figures.count(sheet.length, self._noun)}")
 
     def open_menu(self, key: str) -> None:
         """Opens a filter's menu (by keyboard)."""

@@ -5,12 +5,12 @@ from __future__ import annotations
 from collections.abc import Sequence
 
 from PySide6.QtCore import QSize, Qt, QTimer, Signal
-from PySide6.QtGui import QAction, QPainter, QPaintEvent
+from PySide6.QtGui import QAction, QFontMetrics, QPainter, QPaintEvent, QResizeEvent
 from PySide6.QtWidgets import QAbstractButton, QHBoxLayout, QLineEdit, QSizePolicy, QVBoxLayout, QWidget
 
 from reconciler.window import figures
 from reconciler.window.theme import SEMIBOLD, icon, theme
-from reconciler.window.widgets import action_button, label
+from reconciler.window.widgets import ShortLabel, action_button, label
 
 _PAUSE = 40  # milliseconds after the last letter before a long list is narrowed
 
@@ -27,8 +27,7 @@ class SearchBox(QLineEdit):
         self.setPlaceholderText(hint)
         self.setAccessibleName("Find in this list")
         self.setClearButtonEnabled(False)
-        self.setMinimumWidth(270)
-        self.setMaximumWidth(340)
+        self.setFixedWidth(300)
         self._glass = self.addAction(icon("find", "faint"), QLineEdit.ActionPosition.LeadingPosition)
         theme().changed.connect(lambda: self._glass.setIcon(icon("find", "faint")))
         self.pause = 0
@@ -72,8 +71,6 @@ class NetCard(QAbstractButton):
         theme().changed.connect(self.update)
 
     def sizeHint(self) -> QSize:  # noqa: N802
-        from PySide6.QtGui import QFontMetrics
-
         look = theme()
         wide = QFontMetrics(look.font("body", SEMIBOLD)).horizontalAdvance(self.figure)
         narrow = QFontMetrics(look.font("small")).horizontalAdvance(f"{self.currency} net difference")
@@ -107,9 +104,10 @@ class Header(QWidget):
 
     def __init__(self, title: str, hint: str, export: QAction | None) -> None:
         super().__init__()
-        self.title, self.subtitle = label(title, "title"), label("", "soft")
+        self.title, self.subtitle = label(title, "title"), ShortLabel("soft")
         self.search = SearchBox(hint)
         self._cards: list[NetCard] = []
+        self._bar = QWidget()
         upper = QHBoxLayout()
         upper.setSpacing(18)
         upper.addWidget(self.title, 0, Qt.AlignmentFlag.AlignBaseline)
@@ -131,25 +129,42 @@ class Header(QWidget):
         self._lower.addStretch(1)
         self._upper.addLayout(self._right)
 
+    def add_filters(self, bar: QWidget) -> None:
+        """Puts the filters at the right of the net differences."""
+        self._bar = bar
+        self._lower.addWidget(bar, 0, Qt.AlignmentFlag.AlignBottom)
+
+    def resizeEvent(self, event: QResizeEvent) -> None:  # noqa: N802
+        super().resizeEvent(event)
+        self.fit_cards()
+
+    def fit_cards(self) -> None:
+        """Shows as many net differences as there is room for beside the filters."""
+        room = self.width() - self._bar.sizeHint().width() - 16
+        for made in self._cards:
+            room -= made.sizeHint().width() + 10
+            made.setVisible(room >= 0)
+
     def say(self, title: str, subtitle: str) -> None:
         """What the page shows and how much."""
         self.title.setText(title)
         self.subtitle.setText(subtitle)
         self.setAccessibleName(f"{title}. {subtitle}")
 
-    def show_net(self, net: Sequence[object], most: int = 5) -> None:
-        """One card per currency with a net difference; the largest first, what is left is told in a tip."""
+    def show_net(self, net: Sequence[object]) -> None:
+        """One card per currency with a net difference, in the order of their most urgent breaks."""
         for old in self._cards:
             self._lower.removeWidget(old)
             old.deleteLater()
         self._cards = []
         tip = ("What the bank booked less what the terms say, over all payments with a break; missing cash counts in full. "
                "Click to show only this currency.")  # fmt: skip
-        for place, one in enumerate(net[:most]):
+        for place, one in enumerate(net):
             made = NetCard(one.currency, figures.amount(one.minor, one.digits, signed=True), tip)  # type: ignore[attr-defined]
             made.clicked.connect(lambda on, c=made.currency: self._card_clicked(c, on))
             self._lower.insertWidget(place, made)
             self._cards.append(made)
+        self.fit_cards()
 
     def mark_currency(self, words: Sequence[str]) -> None:
         """Shows which currency the list is narrowed to."""

@@ -14,7 +14,7 @@ import numpy as np
 from reconciler.records import MISSING, Table, Words
 from reconciler.window import figures
 from reconciler.window.search import Index
-from reconciler.window.sheet import Cell, Column, Facet, Fact, Rows, Sheet, facet_of
+from reconciler.window.sheet import Cell, Column, Facet, Fact, Rows, Sheet, facet_of, texts
 
 
 class Records:
@@ -34,7 +34,7 @@ def text_column(name: str, title: str, help_text: str, width: int, stretch: int 
     """A column of words."""
 
     def show(data: Records, at: Rows) -> list[Cell]:
-        return [Cell(text, strong=strong, tone=tone) for text in data.table[name].take(at).to_list()]
+        return [Cell(text, strong=strong, tone=tone) for text in texts(data.table[name].take(at))]
 
     return Column(name, title, help_text, show, lambda data: data.table[name].rank(), width, stretch=stretch)
 
@@ -106,10 +106,10 @@ def facts_of(table: Table, titles: Sequence[tuple[str, str, str]]) -> list[Fact]
 
 def index_of(table: Table, digits: np.ndarray | None = None) -> Index:
     """Makes every text, amount and date of a plain table searchable."""
-    texts = {name: column for name, column in table.columns.items() if isinstance(column, Words)}
+    words = {name: column for name, column in table.columns.items() if isinstance(column, Words)}
     amounts = {name: (table[name], digits) for name in table if digits is not None and ("_minor" in name or "amount" in name)}
     dates = {name: table[name] for name in table if not isinstance(table[name], Words) and table[name].dtype.kind == "M"}
-    return Index(len(table), texts, amounts, dates)  # type: ignore[arg-type]
+    return Index(len(table), words, amounts, dates)  # type: ignore[arg-type]
 
 
 def _facets(table: Table, names: Sequence[tuple[str, str]]) -> list[Facet]:

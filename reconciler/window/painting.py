@@ -63,18 +63,20 @@ def _marked(painter: QPainter, rect: QRect, room: QRect, cell: Cell) -> None:
     painter.drawRoundedRect(QRectF(rect.adjusted(4, inset, -2, -inset - 1)), 5, 5)
     painter.restore()
     colour = look.colour(ink)
-    painter.setPen(colour)
-    painter.setFont(look.font("body", SEMIBOLD))
-    painter.drawText(QRect(rect.left() + 10, rect.top(), 22, rect.height()), _LEFT, cell.glyph)
-    inside = room.adjusted(20, 0, 0, 0)
     if cell.small:
-        upper, lower = _halves(inside)
+        upper, lower = _halves(room)
         _figure(painter, upper, cell, colour, strong=True)
+        painter.setFont(look.font("small", SEMIBOLD))
+        painter.drawText(QRect(rect.left() + 12, lower.top(), 20, lower.height()), _LEFT, cell.glyph)
         painter.setFont(look.font("small"))
         shift = _shift(painter.fontMetrics(), cell.shift) if _is_figure(cell.small) else 0
-        painter.drawText(lower.adjusted(0, 0, -shift, 0), _RIGHT, painter.fontMetrics().elidedText(cell.small, _ELIDE, lower.width()))
+        inside = lower.adjusted(18, 0, -shift, 0)
+        painter.drawText(inside, _RIGHT, painter.fontMetrics().elidedText(cell.small, _ELIDE, inside.width()))
     else:
-        _figure(painter, inside, cell, colour, strong=True)
+        painter.setPen(colour)
+        painter.setFont(look.font("small", SEMIBOLD))
+        painter.drawText(QRect(rect.left() + 12, rect.top(), 22, rect.height() - 1), _LEFT, cell.glyph)
+        _figure(painter, room.adjusted(18, 0, 0, 0), cell, colour, strong=True)
 
 
 def _two_lines(painter: QPainter, room: QRect, cell: Cell, column: Column) -> None:
@@ -89,7 +91,7 @@ def _two_lines(painter: QPainter, room: QRect, cell: Cell, column: Column) -> No
     painter.setFont(look.font("small"))
     painter.setPen(look.colour(tokens.TONES[cell.tone][0] if cell.tone else "soft"))
     small = f"{cell.glyph} {cell.small}" if cell.glyph else cell.small
-    shift = _shift(QFontMetrics(look.font()), cell.shift) if column.right else 0
+    shift = _shift(QFontMetrics(look.font()), cell.shift) if column.right and _is_figure(cell.small) else 0
     painter.drawText(lower.adjusted(0, 0, -shift, 0), _RIGHT if column.right else _LEFT,
                      painter.fontMetrics().elidedText(small, _ELIDE, lower.width()))  # fmt: skip
 

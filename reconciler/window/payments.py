@@ -12,7 +12,7 @@ import numpy as np
 
 from reconciler.records import MISSING, PARTIES, STATES, Words, gather
 from reconciler.window import figures
-from reconciler.window.sheet import Cell, Column, Facet, Fact, Rows, Sheet, facet_of
+from reconciler.window.sheet import Cell, Column, Facet, Fact, Rows, Sheet, facet_of, texts
 from reconciler.window.search import Index
 
 MISSING_WORDS = {
@@ -56,10 +56,6 @@ class Payments:
         return self.item(name, np.arange(len(self.rows)))
 
 
-def _texts(column: Words) -> list[str]:
-    return column.to_list()
-
-
 def title_of(kind: str, side: int, face_text: str, description: str, narrative: str = "") -> str:
     """A payment in one line: "Buy 5,000,000 Marlow Gas 4.625 2031"."""
     if kind == "trade":
@@ -72,12 +68,12 @@ def title_of(kind: str, side: int, face_text: str, description: str, narrative: 
 
 
 def _payment(data: Payments, at: Rows) -> list[Cell]:
-    kinds, names = _texts(data.item("kind", at)), _texts(data.overview.description.take(data.rows[at]))
+    kinds, names = texts(data.item("kind", at)), texts(data.overview.description.take(data.rows[at]))
     sides, faces = data.item("side", at).tolist(), data.item("face_minor", at).tolist()
     digits = data.overview.digits[data.rows[at]].tolist()
-    tickets, brokers = _texts(data.item("ticket", at)), _texts(data.item("broker", at))
-    accounts, entries = _texts(data.item("account", at)), _texts(data.item("bank_entries", at))
-    references = _texts(data.item("broker_reference", at))
+    tickets, brokers = texts(data.item("ticket", at)), texts(data.item("broker", at))
+    accounts, entries = texts(data.item("account", at)), texts(data.item("bank_entries", at))
+    references = texts(data.item("broker_reference", at))
     days = np.where(np.isnat(data.item("terms_date", at)), data.item("desk_date", at), data.item("terms_date", at))
     bank_days = data.item("bank_date", at)
     cells = []
@@ -98,9 +94,9 @@ def _payment(data: Payments, at: Rows) -> list[Cell]:
 
 def _terms(data: Payments, at: Rows) -> list[Cell]:
     amounts, digits = data.item("terms_minor", at).tolist(), data.overview.digits[data.rows[at]].tolist()
-    currencies = _texts(data.item("currency", at))
+    currencies = texts(data.item("currency", at))
     broken = data.overview.party_breaks[0][data.rows[at]]
-    words = _texts(data.breaks["break"].take(broken))
+    words = texts(data.breaks["break"].take(broken))
     cells = []
     for i, minor in enumerate(amounts):
         if words[i]:
@@ -120,8 +116,8 @@ def _party_cells(party: int, column: str) -> Any:
         states = data.overview.state[rows].tolist()
         digits = data.overview.digits[rows].tolist()
         breaks = data.breaks
-        kinds = _texts(breaks["break"].take(found_rows))
-        finds, differences = _texts(breaks["found"].take(found_rows)), _texts(breaks["difference"].take(found_rows))
+        kinds = texts(breaks["break"].take(found_rows))
+        finds, differences = texts(breaks["found"].take(found_rows)), texts(breaks["difference"].take(found_rows))
         cells = []
         for i, kind in enumerate(kinds):
             if kind:
@@ -167,9 +163,9 @@ def days_apart(difference: str, kind: str = "") -> str:
 
 
 def _why(data: Payments, at: Rows) -> list[Cell]:
-    causes, sentences = _texts(data.of_break("cause", at)), _texts(data.of_break("explanation", at))
-    kinds, parties = _texts(data.of_break("break", at)), _texts(data.of_break("party", at))
-    certainties = _texts(data.of_break("certainty", at))
+    causes, sentences = texts(data.of_break("cause", at)), texts(data.of_break("explanation", at))
+    kinds, parties = texts(data.of_break("break", at)), texts(data.of_break("party", at))
+    certainties = texts(data.of_break("certainty", at))
     more = (data.overview.break_count[data.rows[at]] - 1).tolist()
     states = data.overview.state[data.rows[at]].tolist()
     digits = data.overview.digits[data.rows[at]].tolist()
@@ -197,7 +193,7 @@ def _overdue(data: Payments, at: Rows) -> list[Cell]:
 def _stake(data: Payments, at: Rows) -> list[Cell]:
     stakes = data.of_break("stake_minor", at).tolist()
     digits = data.overview.digits[data.rows[at]].tolist()
-    currencies = _texts(data.item("currency", at))
+    currencies = texts(data.item("currency", at))
     return [Cell(figures.amount(stake, digits[i]), currencies[i] if stake != MISSING else "", shift=data.finest - digits[i],
                  strong=True) for i, stake in enumerate(stakes)]  # fmt: skip
 
@@ -239,25 +235,42 @@ def _break_rank(name: str) -> Any:
 
 
 COLUMNS: tuple[Column, ...] = (
-    Column("payment", "Payment", "What is paid; below it ticket, date and counterparty", _payment, _payment_rank, 330,
+    Column("payment", "Payment", "What is paid; below it ticket, date and counterparty", _payment, _payment_rank, 310,
            stretch=3),
     Column("terms", "Terms", "What the bond's own terms say must be paid; a payment by us is negative", _terms,
-           lambda d: _scaled(d, d.whole("terms_minor")), 132, right=True),
+           lambda d: _scaled(d, d.whole("terms_minor")), 90, right=True),
     Column("broker", "Broker", "What the broker confirmed: = where it agrees with the terms",
-           _party_cells(1, "broker_minor"), _party_rank(1, "broker_minor"), 140, right=True),
+           _party_cells(1, "broker_minor"), _party_rank(1, "broker_minor"), 72, right=True),
     Column("desk", "Desk", "What our own ticket says: = where it agrees with the terms", _party_cells(2, "desk_minor"),
-           _party_rank(2, "desk_minor"), 140, right=True),
+           _party_rank(2, "desk_minor"), 72, right=True),
     Column("bank", "Bank", "What was booked to our cash account: = where it agrees with the terms",
-           _party_cells(3, "bank_minor"), _party_rank(3, "bank_minor"), 140, right=True),
-    Column("why", "Why", "The cause found for the most urgent break, and how certain it is", _why, _break_rank("cause"), 250,
+           _party_cells(3, "bank_minor"), _party_rank(3, "bank_minor"), 72, right=True),
+    Column("why", "Why", "The cause found for the most urgent break, and how certain it is", _why, _break_rank("cause"), 230,
            stretch=2),
-    Column("overdue", "Overdue", "Business days since the payment was due", _overdue, _break_rank("overdue_days"), 76,
+    Column("overdue", "Overdue", "Business days since the payment was due", _overdue, _break_rank("overdue_days"), 60,
            right=True, descending_first=True),
     Column("stake", "At stake", "What can be lost on this payment while the break is open", _stake,
-           lambda d: _scaled(d, gather(d.breaks["stake_minor"], d.first)), 124, right=True, descending_first=True),
+           lambda d: _scaled(d, gather(d.breaks["stake_minor"], d.first)), 80, right=True, descending_first=True),
 )  # fmt: skip
 
-QUIET_COLUMNS = tuple(column for column in COLUMNS if column.key not in ("overdue", "stake"))
+
+
+def _plain(name: str, tone: str = "soft") -> Any:
+    return lambda data, at: [Cell(text, tone=tone) for text in texts(data.item(name, at))]
+
+
+def _when(data: Payments, at: Rows) -> list[Cell]:
+    return [Cell(figures.date(day, data.year)) for day in data.item("terms_date", at)]
+
+
+QUIET_COLUMNS: tuple[Column, ...] = (
+    *COLUMNS[:5],
+    Column("day", "Day", "The day the terms say it is paid", _when, lambda d: _day_rank(d.whole("terms_date")), 90, stretch=1),
+    Column("account", "Account", "The cash account it is paid to or from", _plain("account"),
+           lambda d: d.whole("account").rank(), 150, stretch=2),
+    Column("state", "State", "Agrees, within tolerance or due", _plain("state"), lambda d: d.whole("state").rank(), 120,
+           stretch=1),
+)  # fmt: skip
 """Of the lists without breaks."""
 
 
@@ -296,15 +309,15 @@ BREAK_FACTS: tuple[Fact, ...] = (
 
 def _index(data: Payments) -> Index:
     digits = data.overview.digits[data.rows]
-    texts = {name: data.whole(name) for name in
+    words = {name: data.whole(name) for name in
              ("ticket", "bond", "broker", "broker_reference", "account", "bank_entries", "kind", "currency")}  # fmt: skip
-    texts["description"] = data.overview.description.take(data.rows)
+    words["description"] = data.overview.description.take(data.rows)
     if (data.first >= 0).any():
-        texts |= {name: data.breaks[name].take(data.first) for name in ("cause", "break", "explanation")}
+        words |= {name: data.breaks[name].take(data.first) for name in ("cause", "break", "explanation")}
     amounts = {name: (data.whole(name), digits) for name in
                ("terms_minor", "broker_minor", "desk_minor", "bank_minor", "face_minor")}  # fmt: skip
     dates = {name: data.whole(name) for name in ("terms_date", "broker_date", "desk_date", "bank_date", "coupon_date")}
-    return Index(len(data.rows), texts, amounts, dates)
+    return Index(len(data.rows), words, amounts, dates)
 
 
 def _facets(data: Payments, broken: bool) -> list[Facet]:

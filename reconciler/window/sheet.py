@@ -35,6 +35,14 @@ class Cell(NamedTuple):
 Rows = np.ndarray
 
 
+def texts(column: Words) -> list[str]:
+    """The texts of a few rows, "" when blank.
+
+    `Words.to_list` turns the whole vocabulary into Python texts, a million of them for a page of 64 rows; this only those needed.
+    """
+    return [text or "" for text in column.to_arrow().to_pylist()]
+
+
 @dataclass(frozen=True)
 class Column:
     """One column as declared: `show` gives the cells of a page of rows, `rank` an int64 or int32 key for every row."""

@@ -12,7 +12,7 @@ from reconciler.window import figures
 from reconciler.window.theme import MEDIUM, SEMIBOLD, icon, theme
 from reconciler.window.widgets import label, tip_of
 
-WIDTH = 196
+WIDTH = 188
 
 
 class PageButton(QAbstractButton):

@@ -38,15 +38,14 @@ QToolButton[look="bare"] { background: transparent; border: 1px solid transparen
 QToolButton[look="bare"]:hover { background: @wash; }
 QToolButton[look="bare"]:focus { border: 1px solid @accent; }
 
-QLineEdit, QComboBox, QDateEdit, QPlainTextEdit, QSpinBox {
+QLineEdit, QComboBox, QAbstractSpinBox, QPlainTextEdit {
     background: @surface; border: 1px solid @outline; border-radius: @radius; padding: 5px 10px; min-height: 20px;
     selection-background-color: @accent; selection-color: @on_accent;
 }
-QLineEdit:focus, QComboBox:focus, QDateEdit:focus, QPlainTextEdit:focus, QSpinBox:focus { border: 2px solid @accent; padding: 4px 9px; }
+QLineEdit:focus, QComboBox:focus, QAbstractSpinBox:focus, QPlainTextEdit:focus { border: 2px solid @accent; padding: 4px 9px; }
 QLineEdit#search { border-radius: 16px; padding: 5px 14px; }
 QLineEdit#search:focus { padding: 4px 13px; }
-QComboBox::drop-down, QDateEdit::drop-down { border: none; width: 22px; }
-QComboBox::down-arrow, QDateEdit::down-arrow { image: none; width: 0; }
+QComboBox::drop-down { border: none; width: 22px; }
 QComboBox QAbstractItemView { background: @surface; border: 1px solid @outline; selection-background-color: @wash;
     selection-color: @ink; outline: none; padding: 4px; }
 QCheckBox { background: transparent; spacing: 8px; }
@@ -60,7 +59,7 @@ QMenu::separator { height: 1px; background: @hairline; margin: 6px 8px; }
 QMenu::indicator { width: 14px; height: 14px; left: 6px; }
 QToolTip { background: @raised; color: @ink; border: 1px solid @outline; padding: 4px 6px; }
 
-QTableView { background: @surface; border: none; outline: none; selection-background-color: @wash; selection-color: @ink; }
+QTableView { background: @surface; border: none; outline: none; selection-background-color: transparent; selection-color: @ink; }
 QTableView#framed { border: 1px solid @hairline; border-radius: 8px; }
 QHeaderView { background: @surface; border: none; }
 QHeaderView::section { background: @surface; border: none; }
@@ -91,12 +90,12 @@ QFrame#banner { background: @day_wash; border: 1px solid @day; border-radius: 8p
 QFrame#banner QLabel { color: @ink; }
 QFrame#banner[bad="true"] { background: @differ_wash; border-color: @differ; }
 QFrame#notice { background: @proved_wash; border-radius: 8px; }
-QFrame#notice QLabel { color: @proved; font-weight: 600; }
+QFrame#notice QLabel#told { color: @proved; font-weight: 600; }
 QFrame#notice[look="differ"] { background: @differ_wash; }
-QFrame#notice[look="differ"] QLabel { color: @differ; }
+QFrame#notice[look="differ"] QLabel#told { color: @differ; }
 QFrame#notice[look="silent"] { background: @silent_wash; }
-QFrame#notice[look="silent"] QLabel { color: @silent; }
+QFrame#notice[look="silent"] QLabel#told { color: @silent; }
 QFrame#notice[look="day"] { background: @day_wash; }
-QFrame#notice[look="day"] QLabel { color: @day; }
+QFrame#notice[look="day"] QLabel#told { color: @day; }
 QFrame#rule { background: @hairline; max-height: 1px; min-height: 1px; border: none; }
 """

@@ -18,7 +18,7 @@ from reconciler.window import tokens
 from reconciler.window.copying import as_text
 from reconciler.window.model import SheetModel
 from reconciler.window.painting import paint_cell
-from reconciler.window.sheet import Sheet
+from reconciler.window.sheet import Cell, Sheet
 from reconciler.window.theme import SEMIBOLD, theme
 
 _PADDING = 10
@@ -34,16 +34,23 @@ class CellDelegate(QStyledItemDelegate):
     def paint(self, painter: QPainter, option: QStyleOptionViewItem, index: Any) -> None:
         view, model = self.view, self.view.model()
         row, number = index.row(), index.column()
-        selected = view.selectionModel().isRowSelected(row, QModelIndex())
+        # a small list of facts marks its row only while the keyboard is in it
+        selected = (view.sortable or view.hasFocus()) and view.selectionModel().isRowSelected(row, QModelIndex())
         paint_cell(painter, option.rect, model.cell(row, number), model.sheet.columns[number], first=number == 0,
                    selected=selected, hovered=row == view.hovered, focused=view.hasFocus())  # fmt: skip
 
     def sizeHint(self, _option: QStyleOptionViewItem, index: Any) -> QSize:  # noqa: N802
         cell = self.view.model().cell(index.row(), index.column())
-        metrics = QFontMetrics(theme().font("body", SEMIBOLD))
-        small = QFontMetrics(theme().font("small"))
-        wide = max(metrics.horizontalAdvance(cell.text), small.horizontalAdvance(cell.small))
-        return QSize(wide + 2 * _PADDING + (24 if cell.glyph else 0), self.view.row_height)
+        return QSize(cell_width(cell), self.view.row_height)
+
+
+def cell_width(cell: Cell) -> int:
+    """The width a cell needs to show all of its text."""
+    upper = QFontMetrics(theme().font("body", SEMIBOLD)).horizontalAdvance(cell.text)
+    lower = QFontMetrics(theme().font("small")).horizontalAdvance(cell.small)
+    glyph = 20 if cell.glyph else 0
+    wide = max(upper, lower + glyph) if cell.small else upper + glyph
+    return wide + 2 * _PADDING + 2 + cell.shift * 10
 
 
 class Head(QHeaderView):
@@ -67,7 +74,7 @@ class Head(QHeaderView):
         sorting = sheet.sorted_by == column.key
         painter.setFont(look.font("small", SEMIBOLD))
         painter.setPen(look.colour("accent" if sorting else "soft"))
-        text = column.title + (("  ↓" if sheet.descending else "  ↑") if sorting else "")
+        text = column.title + ((" ↓" if sheet.descending else " ↑") if sorting else "")
         room = rect.adjusted(_PADDING + (4 if number == 0 else 0), 0, -_PADDING, -1)
         side = Qt.AlignmentFlag.AlignRight if column.right else Qt.AlignmentFlag.AlignLeft
         metrics = painter.fontMetrics()
@@ -87,6 +94,7 @@ class SheetView(QTableView):
         self.row_height = tokens.ROW_TWO if two_lines else tokens.ROW_ONE
         self.hovered = -1
         self.sortable = True
+        self._needed: list[int] = []
         self._base_row = -1
         self.setAccessibleName(name)
         self.setItemDelegate(CellDelegate(self))
@@ -117,6 +125,7 @@ class SheetView(QTableView):
         if old is not None:
             old.deleteLater()
         self._base_row = -1
+        self._needed = self._needed_widths()
         self.share_width()
         if self.model().rowCount():
             self.go_to(0)
@@ -181,13 +190,29 @@ class SheetView(QTableView):
         if self.model() is None:
             return
         columns = self.model().sheet.columns
-        widths = [column.width for column in columns]
+        widths = list(self._needed)
         spare = self.viewport().width() - sum(widths)
-        shares = sum(column.stretch for column in columns)
-        if spare > 0 and shares:
-            widths = [width + spare * column.stretch // shares for width, column in zip(widths, columns, strict=True)]
+        # what is left goes to the stretching columns; what is missing is taken from those of words, down to half
+        shares = [column.stretch * (1 if spare > 0 else 0 if column.right else width)
+                  for column, width in zip(columns, widths, strict=True)]  # fmt: skip
+        if sum(shares):
+            widths = [max(width + spare * share // sum(shares), width // 2) for width, share in zip(widths, shares, strict=True)]
         for number, width in enumerate(widths):
             self.setColumnWidth(number, width)
+
+    def _needed_widths(self) -> list[int]:
+        """Figures are never cut: a column of figures is as wide as the widest of some rows all over the list."""
+        sheet = self.model().sheet
+        places = np.unique(np.linspace(0, max(len(sheet.shown) - 1, 0), 200).astype(np.int64))
+        rows = sheet.shown[places] if len(sheet.shown) else sheet.shown
+        head = QFontMetrics(theme().font("small", SEMIBOLD))
+        widths = []
+        for column in sheet.columns:
+            wide = max(column.width, head.horizontalAdvance(column.title) + 2 * _PADDING + 4)
+            if column.right:
+                wide = max([wide, *(cell_width(cell) for cell in column.show(sheet.data, rows))])
+            widths.append(wide)
+        return widths
 
     def resizeEvent(self, event: QResizeEvent) -> None:  # noqa: N802
         super().resizeEvent(event)

@@ -65,7 +65,7 @@ TEXT_PAIRS: tuple[tuple[str, str], ...] = (
     ("differ", "surface"), ("differ", "differ_wash"), ("differ", "ground"), ("differ", "wash"), ("differ", "raised"),
     ("ink", "differ_wash"), ("soft", "differ_wash"),
     ("silent", "silent_wash"), ("silent", "surface"), ("silent", "raised"), ("silent", "wash"),
-    ("day", "day_wash"), ("day", "surface"), ("day", "raised"), ("day", "wash"), ("ink", "day_wash"), ("soft", "day_wash"),
+    ("day", "day_wash"), ("day", "surface"), ("day", "raised"), ("day", "wash"), ("ink", "day_wash"), ("soft", "day_wash"), ("ink", "silent_wash"), ("ink", "proved_wash"),
     ("proved", "surface"), ("proved", "wash"), ("proved", "proved_wash"), ("proved", "raised"), ("proved", "ground"),
 )  # fmt: skip
 
@@ -83,10 +83,10 @@ TONES: dict[str, tuple[str, str, str]] = {
 SPACE = {"hair": 2, "tight": 4, "small": 8, "medium": 12, "large": 16, "wide": 24}
 """Distances in logical pixels."""
 
-TYPE = {"small": 12, "body": 14, "heading": 17, "title": 25}
+TYPE = {"small": 12, "body": 13, "heading": 16, "title": 24}
 """Text heights in logical pixels."""
 
-ROW_ONE, ROW_TWO, HEAD = 32, 50, 34
+ROW_ONE, ROW_TWO, HEAD = 29, 46, 32
 """Heights of one-line rows, two-line rows and heads of lists."""
 
 RADIUS = 6

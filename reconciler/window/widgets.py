@@ -2,8 +2,8 @@
 
 from __future__ import annotations
 
-from PySide6.QtCore import Qt
-from PySide6.QtGui import QAction, QKeySequence
+from PySide6.QtCore import QSize, Qt
+from PySide6.QtGui import QAction, QKeySequence, QResizeEvent
 from PySide6.QtWidgets import QFrame, QHBoxLayout, QLabel, QPushButton, QSizePolicy, QToolButton, QVBoxLayout, QWidget
 
 from reconciler.window import tokens
@@ -20,6 +20,37 @@ def label(text: str = "", look: str = "", wrap: bool = False, selectable: bool =
     if selectable:
         made.setTextInteractionFlags(Qt.TextInteractionFlag.TextSelectableByMouse)
     return made
+
+
+class ShortLabel(QLabel):
+    """A text on one line that ends in an ellipsis when there is no room; the whole is in its tip."""
+
+    def __init__(self, look: str = "") -> None:
+        super().__init__()
+        self.setProperty("look", look)
+        self.setTextFormat(Qt.TextFormat.PlainText)
+        self._whole = ""
+
+    def setText(self, text: str) -> None:  # noqa: N802
+        self._whole = text
+        self.setAccessibleName(text)
+        self._shorten()
+
+    def minimumSizeHint(self) -> QSize:  # noqa: N802
+        return QSize(40, super().minimumSizeHint().height())
+
+    def sizeHint(self) -> QSize:  # noqa: N802
+        return QSize(self.fontMetrics().horizontalAdvance(self._whole) + 4, super().sizeHint().height())
+
+    def resizeEvent(self, event: QResizeEvent) -> None:  # noqa: N802
+        super().resizeEvent(event)
+        self._shorten()
+
+    def _shorten(self) -> None:
+        short = self.fontMetrics().elidedText(self._whole, Qt.TextElideMode.ElideRight, max(self.width(), 40))
+        if short != self.text():
+            super().setText(short)
+        self.setToolTip(self._whole if short != self._whole else "")
 
 
 def card(*contents: QWidget, margin: int = 0) -> QFrame:
@@ -106,7 +137,8 @@ class Notice(QFrame):
     def __init__(self, text: str = "", look: str = "") -> None:
         super().__init__()
         self.setObjectName("notice")
-        self._first, self._second = label("", "", wrap=True, selectable=True), label("", "small", wrap=True, selectable=True)
+        self._first, self._second = label("", "", wrap=True, selectable=True), label("", "", wrap=True, selectable=True)
+        self._first.setObjectName("told")
         column = QVBoxLayout(self)
         column.setContentsMargins(14, 10, 14, 10)
         column.setSpacing(2)

@@ -135,7 +135,7 @@ class DetailPane(QFrame):
         line = QHBoxLayout(page)
         line.setContentsMargins(8, 6, 20, 4)
         line.setSpacing(20)
-        line.addWidget(self.facts, 3)
+        line.addWidget(self.facts, 9)
         inner = QWidget()
         inner.setObjectName("scrolled")
         column = QVBoxLayout(inner)
@@ -144,7 +144,7 @@ class DetailPane(QFrame):
         self.differs.setSpacing(8)
         column.addLayout(self.differs)
         column.addStretch(1)
-        line.addWidget(scrolled(inner, "What differs"), 2)
+        line.addWidget(scrolled(inner, "What differs"), 5)
         return page
 
     def _working_page(self) -> QWidget:
@@ -191,4 +191,6 @@ def scrolled(inner: QWidget, name: str) -> QScrollArea:
     area.setHorizontalScrollBarPolicy(Qt.ScrollBarPolicy.ScrollBarAlwaysOff)
     area.setFocusPolicy(Qt.FocusPolicy.NoFocus)
     area.setWidget(inner)
+    for part in (area.viewport(), inner):
+        part.setAutoFillBackground(False)
     return area

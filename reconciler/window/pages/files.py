@@ -49,8 +49,8 @@ class FilesPage(Page):
         rejected, aside = int(totals["rows_rejected"].sum()), int(totals["rows_set_aside"].sum())
         tie = "every row accounted for" if read == used + rejected + aside else "rows do not add up"
         files = len({name for name in totals["file"].to_list()})
-        self.header.say("Files of the day", f"{figures.count(files, 'file')}  ·  {read:,} rows read = {used:,} used + "
-                        f"{rejected:,} rejected + {aside:,} set aside  ·  {tie}")  # fmt: skip
+        self.header.say("Files of the day", f"{figures.count(files, 'file')}, {figures.count(read, 'row')}  ·  {used:,} used, "
+                        f"{rejected:,} rejected, {aside:,} set aside  ·  {tie}")  # fmt: skip
         self.show_sheet(sheet)
         self.rejects.set_sheet(rejects)
         self.rejects_title.setText(figures.count(rejects.length, "rejected row"))

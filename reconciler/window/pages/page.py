@@ -40,7 +40,7 @@ class Page(QWidget):
         self.column.setContentsMargins(24, 18, 24, 20)
         self.column.setSpacing(12)
         self.column.addWidget(self.header)
-        self.column.addWidget(self.filters)
+        self.header.add_filters(self.filters)
         self.header.search.typed.connect(self.search)
         self.header.search.left.connect(self.focus_list)
         self.filters.chosen.connect(self.choose)
@@ -131,6 +131,7 @@ class Page(QWidget):
         if sheet is None:
             return
         self.filters.refresh()
+        self.header.fit_cards()
         self.header.mark_currency(sheet.chosen.get("currency", ()))
         some = len(sheet.shown) > 0
         self._stack.setCurrentIndex(0 if some else 1)

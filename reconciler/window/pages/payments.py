@@ -56,6 +56,11 @@ class PaymentsPage(Page):
         if not sheet.length:
             self.detail.show_row(None, None, -1)
 
+    def count(self) -> int | None:
+        if self.key == "breaks" and self._loaded is not None:
+            return int(self._loaded.overview.breaks)
+        return super().count()
+
     def none_left(self) -> tuple[str, str]:
         if self.key == "breaks":
             return "Nothing differs", "Terms, broker, desk and bank tell the same on every payment of this morning."
