@@ -1,13 +1,14 @@
 """A cent must be the same cent however it was reckoned, so money is exact integers, rounded once by a named rule.
 
-An amount is a quotient of integers (face x rate x days over basis): `half_up` and `down` return that quotient rounded to a whole
-minor unit, equal to rational arithmetic for every input. How: a float64 estimate lies within one unit of the truth, and the
-remainder numerator - estimate x denominator is small, so it comes out exact even where both products wrap around in int64; the
-remainder then moves the estimate by at most one unit. Rows outside the range where that argument holds are first divided by
-their common factors and otherwise reckoned one by one with Python integers.
+An amount is a quotient of integers (face x rate x days over basis): `half_up` and `down` return that quotient rounded
+to a whole minor unit, equal to rational arithmetic for every input. How: a float64 estimate lies within one unit of the
+truth, and the remainder numerator - estimate x denominator is small, so it comes out exact even where both products
+wrap around in int64; the remainder then moves the estimate by at most one unit. Rows outside the range where that
+argument holds are first divided by their common factors and otherwise reckoned one by one with Python integers.
 
 Rounding is half away from zero (half up on the amount, the sign put back after), as markets state it; half-even is not
-offered because no market table of ours asks for it. Digits after the point are those of ISO 4217 (resources/tables/currencies.csv).
+offered because no market table of ours asks for it. Digits after the point are those of ISO 4217
+(resources/tables/currencies.csv).
 """
 
 from __future__ import annotations
@@ -34,12 +35,14 @@ _ESTIMATE_LIMIT = 2.0**47
 _DENOMINATOR_LIMIT = 2.0**61 * (1 - 2.0**-40)
 
 
-def half_up(numerators: Sequence[np.ndarray[Any, Any] | int], denominators: Sequence[np.ndarray[Any, Any] | int]) -> Ints:
+def half_up(
+    numerators: Sequence[np.ndarray[Any, Any] | int], denominators: Sequence[np.ndarray[Any, Any] | int]
+) -> Ints:
     """The product of `numerators` over the product of `denominators`, rounded half away from zero.
 
-    Whole numbers of any sign above, positive whole numbers below: int64 arrays of one shape, or numbers that hold for every row.
-    Returns int64 of that shape (one row when all are single numbers); MISSING where a numerator is MISSING or a denominator
-    is not above zero. A result that does not fit int64 is MISSING too: it is no amount.
+    Whole numbers of any sign above, positive whole numbers below: int64 arrays of one shape, or numbers that hold for
+    every row. Returns int64 of that shape (one row when all are single numbers); MISSING where a numerator is MISSING
+    or a denominator is not above zero. A result that does not fit int64 is MISSING too: it is no amount.
     """
     return _rounded(numerators, denominators, _settle_half_up, _exact_half_up)
 
@@ -158,7 +161,8 @@ def _fast(
 
 
 def _settle_half_up(quotient: Ints, remainder: Ints, denominator: Any, negative: Any) -> None:
-    # On a tie the amount moves away from zero; taking one off the doubled remainder of negative rows turns the tie round.
+    # On a tie the amount moves away from zero; taking one off the doubled remainder of negative rows turns the tie
+    # round.
     remainder += remainder
     remainder -= negative
     quotient += remainder >= denominator
@@ -202,7 +206,8 @@ def _reduced(
 
 
 def _pieces(constant: int) -> list[int]:
-    """A Python integer as factors that fit int64; BugError-free because our constants are powers of ten and small numbers."""
+    """A Python integer as factors that fit int64; BugError-free because our constants are powers of ten and small
+    numbers."""
     pieces: list[int] = []
     while abs(constant) >= 2**62:
         for piece in (10**12, 10**6, 10, 2, 3, 5, 7):
@@ -236,12 +241,15 @@ def known_currency(code: str) -> bool:
 
 
 def minor_digits(currencies: Sequence[str]) -> Ints:
-    """Digits after the point of each currency, one int64 a code (ISO 4217: JPY 0, USD 2, KWD 3); 2 for an unknown code."""
+    """Digits after the point of each currency, one int64 a code (ISO 4217: JPY 0, USD 2, KWD 3); 2 for an unknown
+    code."""
     digits = _digits()
     return np.array([digits.get(code, 2) for code in currencies], np.int64)
 
 
-def to_text(minor: Sequence[int] | np.ndarray[Any, Any], digits: int | Sequence[int] | np.ndarray[Any, Any]) -> list[str]:
+def to_text(
+    minor: Sequence[int] | np.ndarray[Any, Any], digits: int | Sequence[int] | np.ndarray[Any, Any]
+) -> list[str]:
     """Amounts in minor units as plain decimal text ("-1234.50"), "" for MISSING; for the few figures a sentence quotes.
 
     Whole columns go through exports, which has a faster way.

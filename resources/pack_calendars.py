@@ -1,13 +1,16 @@
-"""Writes resources/tables/calendars.npz: the calendars in common use, taken from the `holidays` package once so that start-up need not.
+"""Writes resources/tables/calendars.npz: the calendars in common use, taken from the `holidays` package once so that
+start-up need not.
 
-Run it after the package was upgraded or a code added below: `python resources/pack_calendars.py`. A test compares the file with the
-installed package; corrections (calendar_corrections.csv) are applied when a calendar is loaded and are not in the file.
+Run it after the package was upgraded or a code added below: `python resources/pack_calendars.py`. A test compares the
+file with the installed package; corrections (calendar_corrections.csv) are applied when a calendar is loaded and are
+not in the file.
 """
 
 from __future__ import annotations
 
 import sys
 from pathlib import Path
+from typing import Any
 
 import numpy as np
 
@@ -17,20 +20,23 @@ sys.path.insert(0, str(HERE.parent))
 from reconciler.bonds import closed_days  # noqa: E402
 
 CODES = (
-    "XSIF XFED XECB XLON XNYS XASX XMEX XNSE XSES XHKG XJPX XSWX XTSE XWAR XNZE ENX US GB-ENG GB-SCT GB-NIR JP CA-ON CA-QC CH-ZH SE NO DK "
-    "FI AU-NSW AU-VIC NZ-AUK NZ-WGN ZA BR MX IN-MH SG HK PL CZ HU DE FR IT ES BE NL AT IE PT LU GR"
+    "XSIF XFED XECB XLON XNYS XASX XMEX XNSE XSES XHKG XJPX XSWX XTSE XWAR XNZE ENX US GB-ENG GB-SCT GB-NIR JP CA-ON CA-QC "
+    "CH-ZH SE NO DK FI AU-NSW AU-VIC NZ-AUK NZ-WGN ZA BR MX IN-MH SG HK PL CZ HU DE FR IT ES BE NL AT IE PT LU GR"
 ).split()
 
 
-def packed() -> dict[str, np.ndarray]:
-    """The arrays of the file: days and names of each code one after the other, and what other codes mean the same calendar."""
+def packed() -> dict[str, Any]:
+    """The arrays of the file: days and names of each code one after the other, and what other codes mean the same
+    calendar."""
     import holidays.registry
 
     days, names, offsets = [], [], [0]
     for code in sorted(CODES):
         found, called, weekend = closed_days.from_package(code)
         if not np.array_equal(weekend, closed_days.weekends()):
-            raise SystemExit(f"{code} has a weekend of its own, which the file cannot hold; leave it to be built on demand")
+            raise SystemExit(
+                f"{code} has a weekend of its own, which the file cannot hold; leave it to be built on demand"
+            )
         days.append(found)
         names += called
         offsets.append(offsets[-1] + len(found))

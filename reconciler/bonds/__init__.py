@@ -1,1 +1,2 @@
-"""Arithmetic on arrays: calendars, day counts, schedules, accrual, pricing, settlement; no files, no clock, no loops over trades."""
+"""Arithmetic on arrays: calendars, day counts, schedules, accrual, pricing; no files, no clock, no loops over
+trades."""

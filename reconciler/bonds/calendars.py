@@ -1,14 +1,14 @@
 """Which days count as business days, and where does a date go when it falls on a closed one?
 
-Every calendar is a set of ready tables over the days from 1970-01-01 to 2100-12-31: for each adjustment the step from a day to the
-day it goes to, the number of business days before each day, and the list of business days. Adjusting, adding and counting a
-million dates of mixed calendars are then look-ups. Adjustments are those of ISDA 2006 4.12; "nearest" moves Saturdays back and
-Sundays forward, and forward on a tie.
+Every calendar is a set of ready tables over the days from 1970-01-01 to 2100-12-31: for each adjustment the step from a
+day to the day it goes to, the number of business days before each day, and the list of business days. Adjusting, adding
+and counting a million dates of mixed calendars are then look-ups. Adjustments are those of ISDA 2006 4.12; "nearest"
+moves Saturdays back and Sundays forward, and forward on a tie.
 
-A joint calendar ("XSIF+XECB") is closed if any of its parts is. Dates outside the tables give NaT (or MISSING), never a guess and never
-an exception. Business days are counted strictly after or before the start day: one business day after a Saturday is Monday, one
-business day before a Sunday is Friday. A trade date on a closed day thus settles like one on the day before; US market notices
-(from memory) and QuantLib's Calendar.advance say the same. No intraday cut-offs.
+A joint calendar ("XSIF+XECB") is closed if any of its parts is. Dates outside the tables give NaT (or MISSING), never a
+guess and never an exception. Business days are counted strictly after or before the start day: one business day after a
+Saturday is Monday, one business day before a Sunday is Friday. A trade date on a closed day thus settles like one on
+the day before; US market notices (from memory) and QuantLib's Calendar.advance say the same. No intraday cut-offs.
 """
 
 from __future__ import annotations
@@ -50,7 +50,8 @@ _MONTH: Array = (FIRST + np.arange(DAYS)).astype("datetime64[M]").astype(np.int6
 
 @dataclass(frozen=True)
 class _Tables:
-    """One calendar: `steps` (adjustment, day) int16, `before` business days before each day int32 (one more than days), `open_days`."""
+    """One calendar: `steps` int16 (adjustment, day), business days `before` each day int32 (one row more), `open_days`
+    int64."""
 
     steps: Array
     before: Array
@@ -63,7 +64,9 @@ class Calendars:
     Every method takes arrays of one shape (or single values, taken for all rows) and returns arrays of that shape.
     """
 
-    def __init__(self, codes: tuple[str, ...], parts: tuple[tuple[ClosedDays, ...], ...], changes: tuple[dict[int, bool], ...]):
+    def __init__(
+        self, codes: tuple[str, ...], parts: tuple[tuple[ClosedDays, ...], ...], changes: tuple[dict[int, bool], ...]
+    ) -> None:
         self.codes = codes
         self._numbers = {code: number for number, code in enumerate(codes)}
         self._parts = parts
@@ -72,7 +75,9 @@ class Calendars:
         self._steps = np.concatenate([t.steps.reshape(-1) for t in tables])
         sizes = [len(t.open_days) for t in tables]
         self._first = np.concatenate([[0], np.cumsum(sizes)]).astype(np.int64)
-        self._before = np.concatenate([t.before + np.int32(start) for t, start in zip(tables, self._first, strict=False)])
+        self._before = np.concatenate(
+            [t.before + np.int32(start) for t, start in zip(tables, self._first, strict=False)]
+        )
         self._open_days = np.concatenate([t.open_days for t in tables])
 
     def number(self, code: str) -> int:
@@ -134,8 +139,9 @@ class Calendars:
         return out if inside is None else out & inside
 
     def why_closed(self, calendar: int, day: date | np.datetime64) -> str:
-        """Why a calendar is closed on a day ("Saturday", a holiday's name, "closed by closings.csv"); "" when it is open."""
-        number = int(np.datetime64(day, "D").astype(np.int64))
+        """Why a calendar is closed on a day ("Saturday", a holiday's name, "closed by closings.csv"); "" when it is
+        open."""
+        number = _number(day)
         if not 0 <= number < DAYS or bool(self.is_open(calendar, np.array([day], "datetime64[D]"))[0]):
             return ""
         for part in self._parts[calendar]:
@@ -146,24 +152,30 @@ class Calendars:
         return WEEKDAYS[WEEKDAY[number]]
 
 
+# What closings.csv told of a calendar, and a joint calendar as its parts with what was told of them: hashable, for
+# caching.
+_Told = tuple[tuple[int, bool], ...]
+_Recipe = tuple[tuple[str, ...], tuple[tuple[str, _Told], ...]]
+
+
 def load(
     codes: Iterable[str], closings: Iterable[tuple[str, date | np.datetime64, bool]] = ()
 ) -> tuple[Calendars, dict[str, str]]:
     """The calendars of the given codes, number 0 being weekends only (code ""), the others in alphabetical order.
 
-    `closings` are (calendar, date, open) rows: they hold for the calendar named and for every joint calendar it is part of; a day
-    told both open and closed is closed. Returned beside the calendars: for each code that is not known the reason, in words for
-    the clerk. Such a code gets a calendar of weekends and of those of its parts that are known.
+    `closings` are (calendar, date, open) rows: they hold for the calendar named and for every joint calendar it is part
+    of; a day told both open and closed is closed. Returned beside the calendars: for each code that is not known the
+    reason, in words for the clerk. Such a code gets a calendar of weekends and of those of its parts that are known.
     """
     wanted = ("", *sorted({str(code) for code in codes} - {""}))
     told: dict[str, dict[int, bool]] = {}
     for code, day, opened in closings:
-        number = np.datetime64(day, "D").astype(np.int64)
+        number = _number(day)
         if 0 <= number < DAYS:
             days = told.setdefault(_joint(code), {})
-            days[int(number)] = days.get(int(number), True) and bool(opened)
+            days[number] = days.get(number, True) and bool(opened)
     reasons: dict[str, str] = {}
-    parts: list[tuple[tuple[str, ...], tuple[tuple[str, tuple[tuple[int, bool], ...]], ...]]] = []
+    recipes: list[_Recipe] = []
     for code in wanted:
         known: list[str] = []
         for part in _joint(code).split("+") if code else []:
@@ -172,9 +184,9 @@ def load(
                 known.append(part)
             except UnknownCalendar as fault:
                 reasons.setdefault(code, str(fault))
-        changes = {name: tuple(sorted(told[name].items())) for name in {*_joint(code).split("+"), _joint(code)} if name in told}
-        parts.append((tuple(known), tuple(sorted(changes.items()))))
-    return _assembled(wanted, tuple(parts)), reasons
+        concerned = sorted({*_joint(code).split("+"), _joint(code)} & told.keys())
+        recipes.append((tuple(known), tuple((name, tuple(sorted(told[name].items()))) for name in concerned)))
+    return _assembled(wanted, tuple(recipes)), reasons
 
 
 def _joint(code: str) -> str:
@@ -183,12 +195,10 @@ def _joint(code: str) -> str:
 
 
 @functools.lru_cache(maxsize=8)
-def _assembled(
-    codes: tuple[str, ...], parts: tuple[tuple[tuple[str, ...], tuple[tuple[str, tuple[tuple[int, bool], ...]], ...]], ...]
-) -> Calendars:
+def _assembled(codes: tuple[str, ...], recipes: tuple[_Recipe, ...]) -> Calendars:
     sets: list[tuple[ClosedDays, ...]] = []
     joint_changes: list[dict[int, bool]] = []
-    for known, changes in parts:
+    for known, changes in recipes:
         own = dict(changes)
         sets.append(tuple(_changed(closed_days(name), dict(own.pop(name, ()))) for name in known))
         merged: dict[int, bool] = {}
@@ -215,7 +225,8 @@ def _changed(base: ClosedDays, changes: dict[int, bool]) -> ClosedDays:
 
 
 def _joined(parts: tuple[ClosedDays, ...], changes: dict[int, bool]) -> bytes:
-    """Closed if any part is, with the changes told of the whole; as bytes, so that equal calendars share their tables."""
+    """Closed if any part is, with the changes told of the whole; as bytes, so that equal calendars share their
+    tables."""
     closed = np.logical_or.reduce([part.closed for part in parts]) if parts else weekends()
     if changes:
         closed = closed.copy()
@@ -244,6 +255,10 @@ def _tables(closed_bytes: bytes) -> _Tables:
     steps = np.where((targets < 0) | (np.abs(step) >= _NOWHERE), _NOWHERE, step).astype(np.int16)
     before = np.concatenate([[0], np.cumsum(~closed)]).astype(np.int32)
     return _Tables(steps, before, np.flatnonzero(~closed).astype(np.int64))
+
+
+def _number(day: date | np.datetime64) -> int:
+    return int(np.asarray(day, "datetime64[D]").astype(np.int64))
 
 
 def _days(dates: Array, limit: int = DAYS) -> tuple[Array, Array | None]:

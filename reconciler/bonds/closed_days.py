@@ -1,13 +1,15 @@
-"""On which days is a place closed? Three things answer: the `holidays` package, our corrections to it, and the week's end.
+"""On which days is a place closed? Three things answer: the `holidays` package, our corrections to it, and the week's
+end.
 
-The package knows some 250 countries and 40 markets but takes 100 to 200 ms a calendar, so the calendars in common use are shipped
-ready in resources/tables/calendars.npz (written by resources/pack_calendars.py, checked against the package in the tests) and
-the package is only asked for the others. A country's closed days are its public and bank holidays; a market's those of the market.
-Where the package is known to disagree with the official calendar, resources/tables/calendar_corrections.csv says so, row by row with
-its source; those rules are applied to shipped and fresh calendars alike.
+The package knows some 250 countries and 40 markets but takes 100 to 200 ms a calendar, so the calendars in common use
+are shipped ready in resources/tables/calendars.npz (written by resources/pack_calendars.py, checked against the package
+in the tests) and the package is only asked for the others. A country's closed days are its public and bank holidays; a
+market's those of the market. Where the package is known to disagree with the official calendar,
+resources/tables/calendar_corrections.csv says so, row by row with its source; those rules are applied to shipped and
+fresh calendars alike.
 
-Half days count as open, and a weekend stays closed even in countries that make up working days on Saturdays: bonds do not settle
-then. A morning's closings.csv can say otherwise.
+Half days count as open, and a weekend stays closed even in countries that make up working days on Saturdays: bonds do
+not settle then. A morning's closings.csv can say otherwise.
 """
 
 from __future__ import annotations
@@ -35,10 +37,12 @@ _WEEKDAY_OF_FIRST = 3  # 1 January 1970 was a Thursday
 WEEKDAY: Array = ((np.arange(DAYS) + _WEEKDAY_OF_FIRST) % 7).astype(np.int8)
 """Weekday of each day, Monday is 0."""
 
-# The package's bare GB lists only what England, Wales, Scotland and Northern Ireland share; sterling settles by England and Wales.
+# The package's bare GB lists only what England, Wales, Scotland and Northern Ireland share; sterling settles by England
+# and Wales.
 _MEANT = {"GB": "GB-ENG"}
 _CATEGORIES = ("public", "bank")
-# Banks in Hong Kong close on the general holidays, which the package lists complete as "optional"; its "public" are the statutory ones.
+# Banks in Hong Kong close on the general holidays, which the package lists complete as "optional"; its "public" are the
+# statutory ones.
 _CATEGORIES_OF = {"HK": ("optional",)}
 _HALF_DAY = re.compile(r"\((from|until) \d|afternoon|half.day", re.IGNORECASE)
 
@@ -88,7 +92,8 @@ def weekends(days_of_week: tuple[int, ...] = (5, 6)) -> Array:
     return np.isin(WEEKDAY, days_of_week)
 
 
-# --- shipped calendars ----------------------------------------------------------------------------------------------------
+# --- shipped calendars
+# ----------------------------------------------------------------------------------------------------
 
 
 @dataclass(frozen=True)
@@ -126,7 +131,8 @@ def _shipped() -> _Shipped:
         )
 
 
-# --- the package ----------------------------------------------------------------------------------------------------------
+# --- the package
+# ----------------------------------------------------------------------------------------------------------
 
 
 def from_package(code: str) -> tuple[Array, list[str], Array]:
@@ -145,7 +151,9 @@ def from_package(code: str) -> tuple[Array, list[str], Array]:
         raise unknown
     kind: Any = getattr(holidays, entity)
     if subdivision and subdivision not in kind.subdivisions:
-        raise UnknownCalendar(f"'{code}' is no calendar: {entity} has no subdivision {subdivision} in the holidays package")
+        raise UnknownCalendar(
+            f"'{code}' is no calendar: {entity} has no subdivision {subdivision} in the holidays package"
+        )
     wanted = _CATEGORIES_OF.get(entity, _CATEGORIES)
     categories = tuple(c for c in wanted if c in kind.supported_categories) or kind.supported_categories
     years = range(max(1969, kind.start_year), min(2101, kind.end_year) + 1)
@@ -153,7 +161,9 @@ def from_package(code: str) -> tuple[Array, list[str], Array]:
     with warnings.catch_warnings():
         # The package warns where moon-based dates reach only so far; beyond that such a calendar has its fixed days.
         warnings.simplefilter("ignore")
-        found: Any = kind(years=years, subdiv=subdivision or None, categories=categories, language=language, expand=False)
+        found: Any = kind(
+            years=years, subdiv=subdivision or None, categories=categories, language=language, expand=False
+        )
     weekend = _weekend(found)
     days, names = [], []
     for day, name in sorted(found.items()):
@@ -166,8 +176,8 @@ def from_package(code: str) -> tuple[Array, list[str], Array]:
 
 
 def _weekend(found: Any) -> Array:
-    """The weekend of a country; a few have moved theirs in the course of the years. Where only Sunday is one, Saturday is too:
-    shops open, settlement systems do not."""
+    """The weekend of a country; a few have moved theirs in the course of the years. Where only Sunday is one, Saturday
+    is too: shops open, settlement systems do not."""
     mask = weekends() if found.weekend <= {5, 6} else weekends(tuple(found.weekend))
     if type(found)._get_weekend.__qualname__.startswith("HolidayBase."):
         return mask
@@ -175,7 +185,8 @@ def _weekend(found: Any) -> Array:
     return np.array([found._is_weekend(start + timedelta(n)) for n in range(DAYS)])
 
 
-# --- corrections ----------------------------------------------------------------------------------------------------------
+# --- corrections
+# ----------------------------------------------------------------------------------------------------------
 
 
 def corrections(code: str) -> list[tuple[int, bool, str]]:
@@ -191,8 +202,8 @@ def corrections(code: str) -> list[tuple[int, bool, str]]:
 def days_of(rule: str, first_year: int, last_year: int) -> list[int]:
     """The days a rule of the corrections table means, one a year at most.
 
-    `2001-09-12` one date; `01-02` every year; `12-28 if Monday Tuesday` only when it falls so; `Friday from 06-19` the first
-    such weekday on or after that date; `Easter+40` or `Easter-48` so many days from Easter Sunday.
+    `2001-09-12` one date; `01-02` every year; `12-28 if Monday Tuesday` only when it falls so; `Friday from 06-19` the
+    first such weekday on or after that date; `Easter+40` or `Easter-48` so many days from Easter Sunday.
     """
     if re.fullmatch(r"\d{4}-\d\d-\d\d", rule):
         return [(date.fromisoformat(rule) - date(1970, 1, 1)).days]

@@ -1,15 +1,17 @@
-"""How much of a year lies between two dates is a matter of agreement; each agreement is one entry here, exact to the last digit.
+"""How much of a year lies between two dates is a matter of agreement; each agreement is one entry here, exact to the
+last digit.
 
-A day count says how many days an accrual shows (`days`) and which fraction of the annual rate it earns (`fraction`, a numerator
-and a denominator: exact, so that money is rounded once, at the end). Sources stand beside each entry of `DAY_COUNTS`; figures of
-ISDA's worked examples are in tests/published/.
+A day count says how many days an accrual shows (`days`) and which fraction of the annual rate it earns (`fraction`, a
+numerator and a denominator: exact, so that money is rounded once, at the end). Sources stand beside each entry of
+`DAY_COUNTS`; figures of ISDA's worked examples are in tests/published/.
 
-Most conventions look at the two dates alone. Some need the coupon period the dates lie in, which the schedule supplies as `Period`:
-Act/Act ICMA measures against the lengths of (notional) regular periods, the Canadian rule counts the days left in one, Act/365L asks
-for a leap day in it, two of the 30/360 family ask about month ends and maturity.
+Most conventions look at the two dates alone. Some need the coupon period the dates lie in, which the schedule supplies
+as `Period`: Act/Act ICMA measures against the lengths of (notional) regular periods, the Canadian rule counts the days
+left in one, Act/365L asks for a leap day in it, two of the 30/360 family ask about month ends and maturity.
 
-Not here: names that other people use for these conventions (a broker's layout says what its words mean), and the rule that a regular
-coupon is rate / frequency (`EVEN` marks the day counts it holds for; the coupon itself is paid in accrual).
+Not here: names that other people use for these conventions (a broker's layout says what its words mean), and the rule
+that a regular coupon is rate / frequency (`EVEN` marks the day counts it holds for; the coupon itself is paid in
+accrual).
 """
 
 from __future__ import annotations
@@ -21,20 +23,21 @@ from typing import Any
 import numpy as np
 
 from reconciler.bonds.calendars import Calendars
+from reconciler.bonds.dates import civil, last_of_february, leap, leap_days_through, year_of
 
 Array = np.ndarray[Any, Any]
 Ratio = tuple[Array, Array]
-DAY = np.timedelta64(1, "D")
 
 
 @dataclass(frozen=True)
 class Period:
-    """The coupon period that each accrual lies in; every column has one row per accrual or a single row that holds for all.
+    """The coupon period that each accrual lies in; every column has one row per accrual or a single row that holds for
+    all.
 
-    For a span [start, end) inside one coupon period: `first_days` over `first_length`, `whole` regular periods and `last_days`
-    over `last_length` are its parts, cut at the dates of the regular schedule. A span in a regular period has one part:
-    `first_days` = end - start over `first_length` = days in the period, `whole` 0, `last_days` 0, `last_length` 1.
-    Lengths must be above zero even where their days are 0.
+    For a span [start, end) inside one coupon period: `first_days` over `first_length`, `whole` regular periods and
+    `last_days` over `last_length` are its parts, cut at the dates of the regular schedule. A span in a regular period
+    has one part: `first_days` = end - start over `first_length` = days in the period, `whole` 0, `last_days` 0,
+    `last_length` 1. Lengths must be above zero even where their days are 0.
     """
 
     frequency: Array
@@ -117,22 +120,6 @@ class DayCount:
     """Whether a regular coupon is rate / frequency instead of being counted in days."""
 
 
-def civil(dates: Array) -> tuple[Array, Array, Array]:
-    """Year, month (1-12) and day of month of each date, int64."""
-    months = dates.astype("datetime64[M]")
-    number = months.astype(np.int64)
-    years, month = np.divmod(number, 12)
-    return years + 1970, month + 1, (dates - months.astype("datetime64[D]")).astype(np.int64) + 1
-
-
-def _leap(years: Array) -> Array:
-    return (years % 4 == 0) & ((years % 100 != 0) | (years % 400 == 0))
-
-
-def _last_of_february(years: Array, months: Array, days: Array) -> Array:
-    return (months == 2) & (days == 28 + _leap(years))
-
-
 def _actual(span: Span) -> Array:
     return (span.end - span.start).astype(np.int64)
 
@@ -155,10 +142,13 @@ def _icma(span: Span) -> Ratio:
 
 def _position_isda(dates: Array) -> Array:
     """Where a date stands on a line of years, in units of 1/(365 x 366) of a year."""
-    years = dates.astype("datetime64[Y]")
-    number = years.astype(np.int64) + 1970
-    day_of_year = (dates - years.astype("datetime64[D]")).astype(np.int64)
-    result: Array = number * (365 * 366) + day_of_year * np.where(_leap(number), 365, 366)
+    years = year_of(dates).astype(np.int64)
+    leap_years = leap(years)
+    # Days from the year 0 to 1 January, so that the day of the year is one subtraction; 719,528 of them lie before
+    # 1970.
+    start = 365 * years + (years + 3) // 4 - (years + 99) // 100 + (years + 399) // 400 - 719_528
+    day_of_year = dates.view(np.int64) - start
+    result: Array = years * (365 * 366) + day_of_year * np.where(leap_years, 365, 366)
     return result
 
 
@@ -166,25 +156,17 @@ def _isda(span: Span) -> Ratio:
     return _position_isda(span.end) - _position_isda(span.start), np.array([365 * 366], np.int64)
 
 
-def _leap_days_through(dates: Array) -> Array:
-    """How many 29ths of February lie on or before each date (counted from the year 0)."""
-    years, months, days = civil(dates)
-    past = years - ((months < 2) | ((months == 2) & (days < 29)))
-    result: Array = past // 4 - past // 100 + past // 400
-    return result
-
-
 def _leap_basis(span: Span) -> Ratio:
     starts, ends = span.period("start"), span.period("end")
-    leap_day_inside = _leap_days_through(ends) > _leap_days_through(starts)
-    leap_year_end = _leap(ends.astype("datetime64[Y]").astype(np.int64) + 1970)
+    leap_day_inside = leap_days_through(ends) > leap_days_through(starts)
+    leap_year_end = leap(year_of(ends))
     basis = np.where(np.where(span.frequency == 1, leap_day_inside, leap_year_end), 366, 365)
     return _actual(span), basis
 
 
 def _without_leap_days(span: Span) -> Array:
     start, end = span.start, span.end
-    result: Array = (end - start).astype(np.int64) - (_leap_days_through(end) - _leap_days_through(start))
+    result: Array = (end - start).astype(np.int64) - (leap_days_through(end) - leap_days_through(start))
     return result
 
 
@@ -222,9 +204,9 @@ def _bond_basis(span: Span) -> Array:
 
 def _thirty_us(span: Span) -> Array:
     first, last = civil(span.start), civil(span.end)
-    february = _last_of_february(*first) & span.period("month_end")
+    february = last_of_february(*first) & span.period("month_end")
     day_1 = np.where(february, 30, np.minimum(first[2], 30))
-    day_2 = np.where((february & _last_of_february(*last)) | ((last[2] == 31) & (day_1 == 30)), 30, last[2])
+    day_2 = np.where((february & last_of_february(*last)) | ((last[2] == 31) & (day_1 == 30)), 30, last[2])
     return _thirty(first, last, day_1, day_2)
 
 
@@ -235,8 +217,8 @@ def _thirty_european(span: Span) -> Array:
 
 def _thirty_european_isda(span: Span) -> Array:
     first, last = civil(span.start), civil(span.end)
-    day_1 = np.where(_last_of_february(*first), 30, np.minimum(first[2], 30))
-    february = _last_of_february(*last) & (span.end != span.period("maturity"))
+    day_1 = np.where(last_of_february(*first), 30, np.minimum(first[2], 30))
+    february = last_of_february(*last) & (span.end != span.period("maturity"))
     return _thirty(first, last, day_1, np.where(february, 30, np.minimum(last[2], 30)))
 
 
@@ -247,10 +229,22 @@ DAY_COUNTS: tuple[DayCount, ...] = (
     DayCount("Act/365F", "ISDA 2006 4.16(d)", _actual, _over(365, _actual)),
     DayCount("Act/365L", "ICMA rule 251.1(i); ISDA 2006 supplement (from memory)", _actual, _leap_basis),
     DayCount("30/360", "ISDA 2006 4.16(f)", _bond_basis, _over(360, _bond_basis), even=True),
-    DayCount("30/360 US", "SIA Standard Securities Calculation Methods (from memory)", _thirty_us, _over(360, _thirty_us), even=True),
+    DayCount(
+        "30/360 US",
+        "SIA Standard Securities Calculation Methods (from memory)",
+        _thirty_us,
+        _over(360, _thirty_us),
+        even=True,
+    ),
     DayCount("30E/360", "ISDA 2006 4.16(g)", _thirty_european, _over(360, _thirty_european), even=True),
     DayCount("30E/360 ISDA", "ISDA 2006 4.16(h)", _thirty_european_isda, _over(360, _thirty_european_isda), even=True),
-    DayCount("Act/365 Canada", "Canadian dealers' rule 4803 as QuantLib and market pages state it", _actual, _canadian, even=True),
+    DayCount(
+        "Act/365 Canada",
+        "Canadian dealers' rule 4803 as QuantLib and market pages state it",
+        _actual,
+        _canadian,
+        even=True,
+    ),
     DayCount("NL/365", "common practice, from memory", _without_leap_days, _over(365, _without_leap_days)),
     DayCount("Bus/252", "Brazilian government bond practice, from memory", _business_days, _over(252, _business_days)),
 )
@@ -270,7 +264,8 @@ def accrued_days(
     calendars: Calendars | None = None,
     calendar: Array | None = None,
 ) -> Array:
-    """Days each accrual shows, int64: `day_count` numbers, dates [start, end); the rest only where a convention asks for it.
+    """Days each accrual shows, int64: `day_count` numbers, dates [start, end); the rest only where a convention asks
+    for it.
 
     NaT in either date gives MISSING.
     """

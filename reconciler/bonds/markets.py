@@ -1,12 +1,14 @@
 """A clerk need not spell out how a gilt settles or how a Treasury note is quoted: the market's row says so.
 
-resources/tables/markets.csv has one row for each kind of bond, with the words of bonds.csv for whatever that file leaves blank, a
-source and how far it was confirmed. resources/tables/settlement_cycles.csv has the days from trade to settlement by trade date, since
-cycles change from one trading day to the next (US corporates: T+2 until 2024-05-27, T+1 from 2024-05-28).
+resources/tables/markets.csv has one row for each kind of bond, with the words of bonds.csv for whatever that file
+leaves blank, a source and how far it was confirmed. resources/tables/settlement_cycles.csv has the days from trade to
+settlement by trade date, since cycles change from one trading day to the next (US corporates: T+2 until 2024-05-27, T+1
+from 2024-05-28).
 
-A market names two calendars where two matter: `calendar` for settlement and `payment_calendar` for coupons and redemption (US Treasuries
-settle by the bond market's days and pay by the Fed's). The calendar of bonds.csv, if told, replaces both. Withholding tax is not
-modelled. A market without a confirmed cycle gives no settlement date rather than a guessed one.
+A market names two calendars where two matter: `calendar` for settlement and `payment_calendar` for coupons and
+redemption (US Treasuries settle by the bond market's days and pay by the Fed's). The calendar of bonds.csv, if told,
+replaces both. Withholding tax is not modelled. A market without a confirmed cycle gives no settlement date rather than
+a guessed one.
 """
 
 from __future__ import annotations
@@ -52,7 +54,8 @@ class Market:
     """Whether a linked bond pays back at least par."""
     yield_convention: str
     compounding: int
-    """Periods a year in which the yield of a bond without coupons compounds, 0 for simple interest; MISSING: as it pays."""
+    """Periods a year in which the yield of a bond without coupons compounds, 0 for simple interest; MISSING: as it
+    pays."""
     minimum_denomination_e12: int
     """Smallest face in major units times 10**12; MISSING where it differs from bond to bond."""
     standing: str
@@ -109,7 +112,8 @@ def number(code: str) -> int:
 
 
 def _cycles() -> tuple[Array, Array]:
-    """Trade dates on which some cycle changes, and per market (last row: unknown) the days in each stretch between them."""
+    """Trade dates on which some cycle changes, and per market (last row: unknown) the days in each stretch between
+    them."""
     rows = resources.table("settlement_cycles")
     turns = sorted({row["from"] for row in rows} - {""})
     days = np.full((len(MARKETS) + 1, len(turns) + 1), MISSING, np.int64)
