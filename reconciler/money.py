@@ -21,6 +21,7 @@ from typing import Any
 import numpy as np
 
 from reconciler import resources
+from reconciler.problems import BugError
 
 MISSING = np.iinfo(np.int64).min
 """The int64 that stands for an amount nobody told; any MISSING going in gives MISSING."""
@@ -206,15 +207,14 @@ def _reduced(
 
 
 def _pieces(constant: int) -> list[int]:
-    """A Python integer as factors that fit int64; BugError-free because our constants are powers of ten and small
-    numbers."""
+    """A Python integer as factors that fit int64; ours are powers of ten times small numbers."""
     pieces: list[int] = []
     while abs(constant) >= 2**62:
         for piece in (10**12, 10**6, 10, 2, 3, 5, 7):
             if constant % piece == 0:
                 break
         else:
-            raise OverflowError(f"a constant factor beyond int64 that has no small divisor: {constant}")
+            raise BugError(f"a constant factor beyond int64 without a small divisor: {constant}")
         pieces.append(piece)
         constant //= piece
     return [*pieces, constant]
@@ -241,8 +241,7 @@ def known_currency(code: str) -> bool:
 
 
 def minor_digits(currencies: Sequence[str]) -> Ints:
-    """Digits after the point of each currency, one int64 a code (ISO 4217: JPY 0, USD 2, KWD 3); 2 for an unknown
-    code."""
+    """Digits after the point of each currency (ISO 4217: JPY 0, USD 2, KWD 3), int64; 2 for an unknown code."""
     digits = _digits()
     return np.array([digits.get(code, 2) for code in currencies], np.int64)
 

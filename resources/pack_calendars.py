@@ -1,5 +1,4 @@
-"""Writes resources/tables/calendars.npz: the calendars in common use, taken from the `holidays` package once so that
-start-up need not.
+"""Start-up must not wait for the `holidays` package: this writes calendars in common use to tables/calendars.npz.
 
 Run it after the package was upgraded or a code added below: `python resources/pack_calendars.py`. A test compares the
 file with the installed package; corrections (calendar_corrections.csv) are applied when a calendar is loaded and are
@@ -20,14 +19,13 @@ sys.path.insert(0, str(HERE.parent))
 from reconciler.bonds import closed_days  # noqa: E402
 
 CODES = (
-    "XSIF XFED XECB XLON XNYS XASX XMEX XNSE XSES XHKG XJPX XSWX XTSE XWAR XNZE ENX US GB-ENG GB-SCT GB-NIR JP CA-ON CA-QC "
-    "CH-ZH SE NO DK FI AU-NSW AU-VIC NZ-AUK NZ-WGN ZA BR MX IN-MH SG HK PL CZ HU DE FR IT ES BE NL AT IE PT LU GR"
+    "XSIF XFED XECB XLON XNYS XASX XMEX XNSE XSES XHKG XJPX XSWX XTSE XWAR XNZE ENX US GB-ENG GB-SCT GB-NIR JP CA-ON "
+    "CA-QC CH-ZH SE NO DK FI AU-NSW AU-VIC NZ-AUK NZ-WGN ZA BR MX IN-MH SG HK PL CZ HU DE FR IT ES BE NL AT IE PT LU GR"
 ).split()
 
 
 def packed() -> dict[str, Any]:
-    """The arrays of the file: days and names of each code one after the other, and what other codes mean the same
-    calendar."""
+    """The arrays of the file: days and names code by code, and which other codes mean the same calendar."""
     import holidays.registry
 
     days, names, offsets = [], [], [0]

@@ -1,2 +1,1 @@
-"""Arithmetic on arrays: calendars, day counts, schedules, accrual, pricing; no files, no clock, no loops over
-trades."""
+"""Arithmetic on arrays: calendars, day counts, schedules, accrual, pricing; no clock, no loops over trades."""

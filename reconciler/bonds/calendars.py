@@ -50,8 +50,7 @@ _MONTH: Array = (FIRST + np.arange(DAYS)).astype("datetime64[M]").astype(np.int6
 
 @dataclass(frozen=True)
 class _Tables:
-    """One calendar: `steps` int16 (adjustment, day), business days `before` each day int32 (one row more), `open_days`
-    int64."""
+    """One calendar: `steps` int16 (adjustment, day), business days `before` each day (one row more), `open_days`."""
 
     steps: Array
     before: Array
@@ -139,8 +138,7 @@ class Calendars:
         return out if inside is None else out & inside
 
     def why_closed(self, calendar: int, day: date | np.datetime64) -> str:
-        """Why a calendar is closed on a day ("Saturday", a holiday's name, "closed by closings.csv"); "" when it is
-        open."""
+        """Why a calendar is closed on a day ("Saturday", a holiday, "closed by closings.csv"); "" when it is open."""
         number = _number(day)
         if not 0 <= number < DAYS or bool(self.is_open(calendar, np.array([day], "datetime64[D]"))[0]):
             return ""
@@ -225,8 +223,7 @@ def _changed(base: ClosedDays, changes: dict[int, bool]) -> ClosedDays:
 
 
 def _joined(parts: tuple[ClosedDays, ...], changes: dict[int, bool]) -> bytes:
-    """Closed if any part is, with the changes told of the whole; as bytes, so that equal calendars share their
-    tables."""
+    """Closed if any part is, with the changes told of the whole; as bytes, so that equal ones share their tables."""
     closed = np.logical_or.reduce([part.closed for part in parts]) if parts else weekends()
     if changes:
         closed = closed.copy()

@@ -1,5 +1,4 @@
-"""On which days is a place closed? Three things answer: the `holidays` package, our corrections to it, and the week's
-end.
+"""On which days is a place closed? The week's end, the `holidays` package and our corrections to it answer.
 
 The package knows some 250 countries and 40 markets but takes 100 to 200 ms a calendar, so the calendars in common use
 are shipped ready in resources/tables/calendars.npz (written by resources/pack_calendars.py, checked against the package
@@ -176,8 +175,8 @@ def from_package(code: str) -> tuple[Array, list[str], Array]:
 
 
 def _weekend(found: Any) -> Array:
-    """The weekend of a country; a few have moved theirs in the course of the years. Where only Sunday is one, Saturday
-    is too: shops open, settlement systems do not."""
+    """The weekend of a country, day by day for the few that have moved theirs in the course of the years."""
+    # Where the package has Sunday alone, Saturday is closed too: shops open then, settlement systems do not.
     mask = weekends() if found.weekend <= {5, 6} else weekends(tuple(found.weekend))
     if type(found)._get_weekend.__qualname__.startswith("HolidayBase."):
         return mask

@@ -1,5 +1,4 @@
-"""How much of a year lies between two dates is a matter of agreement; each agreement is one entry here, exact to the
-last digit.
+"""How much of a year lies between two dates is a matter of agreement; each agreement is one entry here, exact.
 
 A day count says how many days an accrual shows (`days`) and which fraction of the annual rate it earns (`fraction`, a
 numerator and a denominator: exact, so that money is rounded once, at the end). Sources stand beside each entry of
@@ -31,8 +30,7 @@ Ratio = tuple[Array, Array]
 
 @dataclass(frozen=True)
 class Period:
-    """The coupon period that each accrual lies in; every column has one row per accrual or a single row that holds for
-    all.
+    """The coupon period each accrual lies in: columns of one row per accrual, or of a single row that holds for all.
 
     For a span [start, end) inside one coupon period: `first_days` over `first_length`, `whole` regular periods and
     `last_days` over `last_length` are its parts, cut at the dates of the regular schedule. A span in a regular period
@@ -136,6 +134,9 @@ def _over(basis: int, days: Callable[[Span], Array]) -> Callable[[Span], Ratio]:
 def _icma(span: Span) -> Ratio:
     first_length, last_length = span.period("first_length"), span.period("last_length")
     whole, last_days = span.period("whole"), span.period("last_days")
+    if not (whole.any() or last_days.any()):
+        # Regular and short periods, nearly all there are: one part, and a smaller denominator.
+        return span.period("first_days"), span.frequency * first_length
     above = span.period("first_days") * last_length + last_days * first_length + whole * (first_length * last_length)
     return above, span.frequency * first_length * last_length
 
@@ -170,6 +171,9 @@ def _without_leap_days(span: Span) -> Array:
     return result
 
 
+# Under half a coupon (365 / frequency days) the days count over 365, beyond it the days left are taken off the whole
+# coupon; a full period is the whole coupon even where it has 181 days. QuantLib divides 365 / 2 in whole numbers and so
+# changes over at 182 days, half a day sooner. With one payment a year the second form only meets the last day of 366.
 def _canadian_part(days: Array, length: Array, frequency: Array) -> Array:
     """Days within one regular period, as a numerator over 365 x frequency."""
     late = 365 - frequency * (length - days)
@@ -219,7 +223,9 @@ def _thirty_european_isda(span: Span) -> Array:
     first, last = civil(span.start), civil(span.end)
     day_1 = np.where(last_of_february(*first), 30, np.minimum(first[2], 30))
     february = last_of_february(*last) & (span.end != span.period("maturity"))
-    return _thirty(first, last, day_1, np.where(february, 30, np.minimum(last[2], 30)))
+    days = _thirty(first, last, day_1, np.where(february, 30, np.minimum(last[2], 30)))
+    # Of a span that starts and ends on a maturity in February only the start is stretched to the 30th: still no days.
+    return np.where(span.start == span.end, 0, days)
 
 
 DAY_COUNTS: tuple[DayCount, ...] = (
@@ -264,10 +270,9 @@ def accrued_days(
     calendars: Calendars | None = None,
     calendar: Array | None = None,
 ) -> Array:
-    """Days each accrual shows, int64: `day_count` numbers, dates [start, end); the rest only where a convention asks
-    for it.
+    """Days each accrual shows, int64, for `day_count` numbers and dates [start, end).
 
-    NaT in either date gives MISSING.
+    The rest is read only where a convention asks for it. NaT in either date gives MISSING.
     """
     start, end = _dates(start), _dates(end)
     span = Span(start, end, period, calendars, calendar)
@@ -293,7 +298,7 @@ def fraction(
 ) -> Ratio:
     """The exact fraction of a year in each [start, end), as int64 numerators and positive denominators.
 
-    NaT in either date gives MISSING over 1.
+    Arguments as for `accrued_days`; not reduced to lowest terms. NaT in either date gives MISSING over 1.
     """
     start, end = _dates(start), _dates(end)
     span = Span(start, end, period, calendars, calendar)

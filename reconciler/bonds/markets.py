@@ -54,8 +54,7 @@ class Market:
     """Whether a linked bond pays back at least par."""
     yield_convention: str
     compounding: int
-    """Periods a year in which the yield of a bond without coupons compounds, 0 for simple interest; MISSING: as it
-    pays."""
+    """Periods a year in which the yield of a zero compounds, 0 for simple interest; MISSING: as the bond pays."""
     minimum_denomination_e12: int
     """Smallest face in major units times 10**12; MISSING where it differs from bond to bond."""
     standing: str
@@ -112,8 +111,7 @@ def number(code: str) -> int:
 
 
 def _cycles() -> tuple[Array, Array]:
-    """Trade dates on which some cycle changes, and per market (last row: unknown) the days in each stretch between
-    them."""
+    """Trade dates on which some cycle changes, and per market (last row: unknown) the days in each stretch between."""
     rows = resources.table("settlement_cycles")
     turns = sorted({row["from"] for row in rows} - {""})
     days = np.full((len(MARKETS) + 1, len(turns) + 1), MISSING, np.int64)
