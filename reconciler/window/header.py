@@ -29,12 +29,15 @@ class SearchBox(QLineEdit):
         self.setClearButtonEnabled(False)
         self.setFixedWidth(300)
         self._glass = self.addAction(icon("find", "faint"), QLineEdit.ActionPosition.LeadingPosition)
-        theme().changed.connect(lambda: self._glass.setIcon(icon("find", "faint")))
+        theme().changed.connect(self._renew_icon)
         self.pause = 0
         self._timer = QTimer(self)
         self._timer.setSingleShot(True)
         self._timer.timeout.connect(lambda: self.typed.emit(self.text()))
         self.textChanged.connect(lambda: self._timer.start(self.pause))
+
+    def _renew_icon(self) -> None:
+        self._glass.setIcon(icon("find", "faint"))
 
     def be_patient(self, rows: int) -> None:
         """With many rows a short pause lets fast typing narrow once and not per letter."""

@@ -88,7 +88,8 @@ class Index:
         step = 10 ** (_DIGITS - len(part))
         first = int(whole + part) * step
         # with a point typed the whole part is complete; without one any number of further digits may follow
-        ranges = [(first, first + step)] if dot else [(first * 10**k, (first + step) * 10**k) for k in range(13)]
+        more = 1 if dot or not first else 17
+        ranges = [(first * 10**k, (first + step) * 10**k) for k in range(more)]
         for name in self.amounts:
             kept = self._sorted_amounts(name)
             for low, high in ranges:

@@ -82,7 +82,7 @@ class Sidebar(QWidget):
         self.menu_button.setToolTip("Everything the window can do (F10)")
         self.menu_button.setAccessibleName("Menu")
         self.menu_button.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
-        theme().changed.connect(lambda: self.menu_button.setIcon(icon("menu")))
+        theme().changed.connect(self._renew_icon)
         self.buttons: dict[str, PageButton] = {}
         self._group = QButtonGroup(self)
         column = QVBoxLayout(self)
@@ -113,6 +113,9 @@ class Sidebar(QWidget):
         self.foot = label("", "small", wrap=True)
         self.foot.setContentsMargins(11, 0, 4, 0)
         column.addWidget(self.foot)
+
+    def _renew_icon(self) -> None:
+        self.menu_button.setIcon(icon("menu"))
 
     def show_page(self, key: str) -> None:
         """Marks the page that is shown."""

@@ -40,6 +40,7 @@ def window(qtbot, loaded: Loaded) -> Iterator[MainWindow]:  # type: ignore[no-un
     made.resize(1440, 900)
     made.show()
     made.show_loaded(loaded)
-    qtbot.waitExposed(made)
+    made.activateWindow()
+    qtbot.waitUntil(made.isActiveWindow)
     yield made
     jobs.stop_all()
