@@ -43,6 +43,9 @@ _CATEGORIES = ("public", "bank")
 # Banks in Hong Kong close on the general holidays, which the package lists complete as "optional"; its "public" are the
 # statutory ones.
 _CATEGORIES_OF = {"HK": ("optional",)}
+# Market calendars that the package begins late, what stands in for them before, and the first year they speak for themselves.
+# Offices keep a holiday on a Saturday the Friday before; the Fed does not, the bond market only twice (see the corrections).
+_BEFORE = {"XFED": ("US", 1999), "XSIF": ("US", 1996), "XLON": ("GB-ENG", 2000)}
 _HALF_DAY = re.compile(r"\((from|until) \d|afternoon|half.day", re.IGNORECASE)
 
 
@@ -75,6 +78,11 @@ def closed_days(code: str) -> ClosedDays:
     else:
         days, names, weekend = from_package(code)
     named = dict(zip(days.tolist(), names, strict=True))
+    if code in _BEFORE:
+        other, year = _BEFORE[code]
+        until, friday = _day(year, "01-01"), WEEKDAYS.index("Friday")
+        earlier = {day: name for day, name in closed_days(other).names.items() if day < until}
+        named |= {d: name for d, name in earlier.items() if not ("(observed)" in name and WEEKDAY[d] == friday)}
     for day, opened, name in corrections(code):
         if opened:
             named.pop(day, None)
@@ -139,7 +147,7 @@ def from_package(code: str) -> tuple[Array, list[str], Array]:
     # Imported here because the package takes 60 ms and most mornings need only shipped calendars.
     import holidays
 
-    entity, _, subdivision = code.partition("-")
+    entity, dash, subdivision = code.partition("-")
     unknown = UnknownCalendar(
         f"'{code}' is no calendar: use a market code of the holidays package such as XSIF, XECB or XLON, "
         "or a country code such as JP or GB-ENG, joined by + if several must be open"
@@ -149,9 +157,9 @@ def from_package(code: str) -> tuple[Array, list[str], Array]:
     if not re.fullmatch(r"[A-Z][A-Z0-9]{1,4}", entity) or (entity not in financial and entity not in countries):
         raise unknown
     kind: Any = getattr(holidays, entity)
-    if subdivision and subdivision not in kind.subdivisions:
+    if dash and subdivision not in kind.subdivisions:
         raise UnknownCalendar(
-            f"'{code}' is no calendar: {entity} has no subdivision {subdivision} in the holidays package"
+            f"'{code}' is no calendar: {entity} has no subdivision '{subdivision}' in the holidays package"
         )
     wanted = _CATEGORIES_OF.get(entity, _CATEGORIES)
     categories = tuple(c for c in wanted if c in kind.supported_categories) or kind.supported_categories
