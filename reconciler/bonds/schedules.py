@@ -1,0 +1,250 @@
+"""When does a bond pay, and which coupon period holds a given day?
+
+Coupon dates are a grid of whole months rolled back from the last regular coupon (or maturity), always counted from that anchor so that
+a clamped February does not spread; the end-of-month rule keeps month ends. Explicit first and last regular coupons cut
+the grid into stubs, short or long. A day's period is found in closed form from the months between it and the anchor: no
+walking back. Payments move off closed days by the payment adjustment; ex-dividend and record dates count back from the
+unadjusted coupon date.
+
+Irregular periods are also cut at the dates of the grid, as Act/Act ICMA asks (ICMA rule 251; 31 CFR 356 Appendix B).
+Not here: amounts (accrual), and what a holder is entitled to (expected).
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import Any
+
+import numpy as np
+
+from reconciler.bonds.dates import civil
+from reconciler.bonds.daycounts import Period
+from reconciler.bonds.terms import BUSINESS, NAT, Terms
+from reconciler.money import MISSING
+
+Array = np.ndarray[Any, Any]
+
+
+@dataclass(frozen=True)
+class Periods:
+    """The coupon period of each day asked for: unadjusted and accrual boundaries; NaT where there is none."""
+
+    start: Array
+    end: Array
+    accrual_start: Array
+    accrual_end: Array
+    regular: Array
+
+
+@dataclass(frozen=True)
+class Coupons:
+    """Coupons one after the other: the bond's row, the unadjusted coupon date and its payment date."""
+
+    bond_row: Array
+    unadjusted: Array
+    payment_date: Array
+
+    def __len__(self) -> int:
+        return len(self.bond_row)
+
+
+def _months(terms: Terms, rows: Array) -> Array:
+    """Months between coupons; 12 for bonds without any, so that a grid exists for yields."""
+    frequency = terms.frequency[rows]
+    return 12 // np.maximum(frequency, 1)
+
+
+def _month_number(dates: Array) -> tuple[Array, Array]:
+    year, month, day = civil(dates)
+    return (year.astype(np.int64) - 1970) * 12 + (month - 1), day.astype(np.int64)
+
+
+def _date(month: Array, day: Array, month_end: Array) -> Array:
+    """The day of a month number, the last of the month where it has no such day or month ends are kept."""
+    first = month.view("datetime64[M]").astype("datetime64[D]") if month.dtype == np.int64 else month.astype("datetime64[M]").astype("datetime64[D]")
+    following = (month.astype(np.int64) + 1).view("datetime64[M]").astype("datetime64[D]")
+    length = (following - first).astype(np.int64)
+    result: Array = first + (np.where(month_end, length, np.minimum(day, length)) - 1)
+    return result
+
+
+class Grid:
+    """The coupon grid of some rows: `at(k)` is the date k periods before the anchor (negative k: after it)."""
+
+    def __init__(self, terms: Terms, rows: Array) -> None:
+        self.month, self.day = _month_number(terms.anchor[rows])
+        self.step = _months(terms, rows).astype(np.int64)
+        self.month_end = terms.end_of_month[rows]
+
+    def at(self, k: Array) -> Array:
+        """Grid date number k of each row."""
+        return _date(self.month - k * self.step, self.day, self.month_end)
+
+    def number_at_or_before(self, dates: Array) -> Array:
+        """The smallest k whose date is on or before each day."""
+        month, _day = _month_number(dates)
+        k = -((month - self.month) // self.step)
+        return k + (self.at(k) > dates)
+
+
+def grid_after(terms: Terms, rows: Array, dates: Array) -> Array:
+    """The first grid date after each day."""
+    grid = Grid(terms, rows)
+    return grid.at(grid.number_at_or_before(dates) - 1)
+
+
+def periods_at(terms: Terms, rows: Array, dates: Array) -> Periods:
+    """The coupon period with start <= day < end for each (bond row, day).
+
+    NaT boundaries for bonds without coupons and for days on or after maturity; a day before the accrual start gets the first
+    period. Without an accrual start the grid runs back without end.
+    """
+    rows, dates = np.asarray(rows), np.asarray(dates, "datetime64[D]")
+    grid = Grid(terms, rows)
+    with_first = terms.first_coupon[rows]
+    begin, anchor, maturity = terms.accrual_start[rows], terms.anchor[rows], terms.maturity[rows]
+    k = grid.number_at_or_before(dates)
+    start, end = grid.at(k), grid.at(k - 1)
+    regular = np.ones(len(rows), np.bool_)
+
+    last = dates >= anchor
+    if last.any():
+        start, end = np.where(last, anchor, start), np.where(last, maturity, end)
+        regular &= ~last | (grid.at(np.full(len(rows), -1)) == maturity)
+    first = dates < with_first
+    if first.any():
+        natural = grid.at(grid.number_at_or_before(with_first - 1))
+        exact = (natural == begin) & (grid.at(grid.number_at_or_before(with_first)) == with_first)
+        regular = np.where(first, exact, regular)
+        start, end = np.where(first, begin, start), np.where(first, with_first, end)
+    # A first coupon off the grid opens a broken second period.
+    broken = ~first & (start < with_first)
+    if broken.any():
+        start = np.where(broken, with_first, start)
+        regular &= ~broken
+    none = (terms.frequency[rows] == 0) | (dates >= maturity) | np.isnat(dates) | ~terms.sound[rows]
+    if none.any():
+        start, end = np.where(none, NAT, start), np.where(none, NAT, end)
+    return _accrual(terms, rows, start, end, regular)
+
+
+def _accrual(terms: Terms, rows: Array, start: Array, end: Array, regular: Array) -> Periods:
+    adjusted = terms.accrual_adjusted[rows]
+    if not adjusted.any():
+        return Periods(start, end, start, end, regular)
+    begin = terms.accrual_start[rows]
+    moved_start = np.where(adjusted & (start != begin), payment_dates(terms, rows, start), start)
+    moved_end = np.where(adjusted, payment_dates(terms, rows, end), end)
+    return Periods(start, end, moved_start, moved_end, regular)
+
+
+def period_ending(terms: Terms, rows: Array, coupon_dates: Array) -> Periods:
+    """The period that a coupon date (unadjusted) closes."""
+    return periods_at(terms, rows, np.asarray(coupon_dates, "datetime64[D]") - 1)
+
+
+def parts(terms: Terms, rows: Array, start: Array, end: Array, periods: Periods) -> Period:
+    """What the day counts ask of the period that [start, end) lies in (see daycounts.Period)."""
+    one = np.ones(len(rows), np.int64)
+    zero = np.zeros(len(rows), np.int64)
+    days = (end - start).astype(np.int64)
+    length = np.maximum((periods.accrual_end - periods.accrual_start).astype(np.int64), 1)
+    whole, first_days, first_length, last_days, last_length = zero, days, length, zero, one
+    odd = np.flatnonzero(~periods.regular & ~np.isnat(periods.start))
+    if len(odd):
+        whole, first_days, first_length = whole.copy(), first_days.copy(), first_length.copy()
+        last_days, last_length = last_days.copy(), last_length.copy()
+        grid = Grid(terms, rows[odd])
+        x, y = start[odd], end[odd]
+        kx, ky = grid.number_at_or_before(x), grid.number_at_or_before(y)
+        g0, g1, h0, h1 = grid.at(kx), grid.at(kx - 1), grid.at(ky), grid.at(ky - 1)
+        single = kx == ky
+        whole[odd] = np.where(single, 0, kx - ky - 1)
+        first_days[odd] = np.where(single, y - x, g1 - x).astype(np.int64)
+        first_length[odd] = (g1 - g0).astype(np.int64)
+        last_days[odd] = np.where(single, 0, (y - h0).astype(np.int64))
+        last_length[odd] = np.where(single, 1, (h1 - h0).astype(np.int64))
+    return Period(
+        frequency=terms.frequency[rows],
+        start=periods.start,
+        end=periods.end,
+        whole=whole,
+        first_days=first_days,
+        first_length=first_length,
+        last_days=last_days,
+        last_length=last_length,
+        maturity=terms.maturity[rows],
+        month_end=terms.end_of_month[rows],
+    )
+
+
+def payment_dates(terms: Terms, rows: Array, unadjusted: Array) -> Array:
+    """When a date (coupon, maturity) is paid: moved off closed days of the payment calendar by the bond's adjustment."""
+    return terms.calendars.roll(terms.payment_calendar[rows], unadjusted, terms.payment_adjustment[rows])
+
+
+def _back(terms: Terms, rows: Array, dates: Array, days: Array, unit: Array) -> Array:
+    known = days != MISSING
+    count = np.where(known, days, 0)
+    business = terms.calendars.add(terms.calendar[rows], dates, -np.maximum(count, 1))
+    business = np.where(count == 0, dates, business)
+    return np.where(known, np.where(unit == BUSINESS, business, dates - count), NAT)
+
+
+def ex_dates(terms: Terms, rows: Array, unadjusted: Array) -> Array:
+    """First settlement date without the coupon of each date; NaT where the bond has no ex-dividend rule."""
+    return _back(terms, rows, unadjusted, terms.ex_days[rows], terms.ex_unit[rows])
+
+
+def record_dates(terms: Terms, rows: Array, unadjusted: Array) -> Array:
+    """The day at whose close the coupon belongs to the holder."""
+    return _back(terms, rows, unadjusted, terms.record_days[rows], terms.record_unit[rows])
+
+
+def coupons_between(terms: Terms, rows: Array, first: np.datetime64, last: np.datetime64) -> Coupons:
+    """Coupons of the bonds at `rows` that are paid in [first, last] (payment dates), by row and date."""
+    rows = np.asarray(rows)
+    rows = rows[(terms.frequency[rows] > 0) & terms.sound[rows]]
+    # Adjustments move a payment by days, never by weeks: look a little wider, then hold the payment date against the window.
+    margin = np.timedelta64(20, "D")
+    low, high = np.datetime64(first, "D") - margin, np.datetime64(last, "D") + margin
+    found_rows, found_dates = _coupon_dates(terms, rows, np.full(len(rows), low), np.full(len(rows), high))
+    paid = payment_dates(terms, found_rows, found_dates)
+    keep = (paid >= first) & (paid <= last)
+    return Coupons(found_rows[keep], found_dates[keep], paid[keep])
+
+
+def all_coupons(terms: Terms, rows: Array) -> Coupons:
+    """The full schedules of the bonds at `rows`; without an accrual start (or first coupon), from one period before maturity's year back to 1970."""
+    rows = np.asarray(rows)
+    rows = rows[(terms.frequency[rows] > 0) & terms.sound[rows]]
+    begin = np.where(np.isnat(terms.accrual_start[rows]), terms.told_first_coupon[rows] - 1, terms.accrual_start[rows])
+    begin = np.where(np.isnat(begin), np.datetime64("1970-01-01"), begin)
+    found_rows, dates = _coupon_dates(terms, rows, begin + 1, terms.maturity[rows])
+    return Coupons(found_rows, dates, payment_dates(terms, found_rows, dates))
+
+
+def _coupon_dates(terms: Terms, rows: Array, low: Array, high: Array) -> tuple[Array, Array]:
+    """Unadjusted coupon dates in [low, high] of each row, flat, by row and date."""
+    grid = Grid(terms, rows)
+    first = terms.first_coupon[rows]
+    low = np.maximum(low, np.where(np.isnat(first), low, first))
+    maturity, anchor = terms.maturity[rows], terms.anchor[rows]
+    upper, lower = np.minimum(high, anchor), low
+    k_low = np.maximum(grid.number_at_or_before(upper), 0)
+    k_high = grid.number_at_or_before(lower - 1) - 1
+    count = np.maximum(k_high - k_low + 1, 0)
+    owner = np.repeat(np.arange(len(rows)), count)
+    within = np.arange(count.sum()) - np.repeat(np.cumsum(count) - count, count)
+    k = np.repeat(k_high, count) - within
+    dates = _date(grid.month[owner] - k * grid.step[owner], grid.day[owner], grid.month_end[owner])
+    # maturity after a last regular coupon, and a first coupon that the grid does not know
+    stub = np.flatnonzero((maturity > anchor) & (maturity >= low) & (maturity <= high))
+    on_grid = grid.at(grid.number_at_or_before(first)) == first
+    off = np.flatnonzero(~np.isnat(first) & ~on_grid & (first >= low) & (first <= high) & (first < maturity))
+    if len(stub) or len(off):
+        owner = np.concatenate([owner, stub, off])
+        dates = np.concatenate([dates, maturity[stub], first[off]])
+        order = np.lexsort((dates, owner))
+        owner, dates = owner[order], dates[order]
+    return rows[owner], dates

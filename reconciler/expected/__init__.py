@@ -1,0 +1,1 @@
+"""What the bonds' own terms say must be paid, and to whom."""
