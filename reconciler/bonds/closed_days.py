@@ -43,8 +43,9 @@ _CATEGORIES = ("public", "bank")
 # Banks in Hong Kong close on the general holidays, which the package lists complete as "optional"; its "public" are the
 # statutory ones.
 _CATEGORIES_OF = {"HK": ("optional",)}
-# Market calendars that the package begins late, what stands in for them before, and the first year they speak for themselves.
-# Offices keep a holiday on a Saturday the Friday before; the Fed does not, the bond market only twice (see the corrections).
+# Market calendars that the package begins late, what stands in for them before, and the first year they speak for
+# themselves. Offices keep a holiday on a Saturday the Friday before; the Fed does not, the bond market only twice (see
+# the corrections).
 _BEFORE = {"XFED": ("US", 1999), "XSIF": ("US", 1996), "XLON": ("GB-ENG", 2000)}
 _HALF_DAY = re.compile(r"\((from|until) \d|afternoon|half.day", re.IGNORECASE)
 

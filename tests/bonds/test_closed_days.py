@@ -27,7 +27,8 @@ def on(*texts: str) -> Callable[[date, str], bool]:
 
 
 def hungary(day: date, name: str) -> bool:
-    """Bridge days that Hungary swaps for working Saturdays, and Christmas Eve, free by law from 2026; not in QuantLib."""
+    """Bridge days that Hungary swaps for working Saturdays, and Christmas Eve, free by law from 2026; not in
+    QuantLib."""
     return name.startswith("Day off (substituted") or (name == "Christmas Eve" and day.year >= 2026)
 
 
@@ -107,8 +108,9 @@ def test_weekday_by_weekday_against_quantlib(code, reference, explained):
 
 @pytest.mark.parametrize(("code", "reference"), [("XFED", US(US.FederalReserve)), ("XSIF", US(US.GovernmentBond))])
 def test_earlier_years_against_quantlib(code, reference):
-    """Before the package's own start the federal holidays stand in. QuantLib has Martin Luther King's day from 1983, when the
-    law was made; it was first kept in 1986. The bond market closed on Good Friday 1996, which QuantLib leaves open."""
+    """Before the package's own start the federal holidays stand in. QuantLib has Martin Luther King's day from 1983,
+    when the law was made; it was first kept in 1986. The bond market closed on Good Friday 1996, which QuantLib leaves
+    open."""
     ours = closed_days.closed_days(code)
     for day in weekdays("1972-01-01", "1999-12-31").astype(object):
         number = (day - date(1970, 1, 1)).days
@@ -138,7 +140,8 @@ def test_singapore():
     assert closed.tolist() == gazetted[(gazetted.astype(np.int64) + 3) % 7 < 5].tolist()
 
 
-# Holidays of the Bombay (Mumbai) market in 2024 with a fixed date, from memory; moon-based ones differ from list to list.
+# Holidays of the Bombay (Mumbai) market in 2024 with a fixed date, from memory; moon-based ones differ from list to
+# list.
 @pytest.mark.parametrize("day", ["2024-01-26", "2024-03-29", "2024-05-01", "2024-08-15", "2024-10-02", "2024-12-25"])
 def test_mumbai(day):
     assert closed_days.closed_days("IN-MH").closed[int(np.datetime64(day).astype(np.int64))]
@@ -180,7 +183,8 @@ def test_a_code_that_is_not_shipped_is_built():
 
 
 def test_weekends():
-    """Saturday and Sunday; Friday and Saturday where the package says so; Hong Kong's Saturdays are closed all the same."""
+    """Saturday and Sunday; Friday and Saturday where the package says so; Hong Kong's Saturdays are closed all the
+    same."""
     week = np.arange(np.datetime64("2026-03-02"), np.datetime64("2026-03-09")).astype(np.int64)
     assert closed_days.closed_days("HK").closed[week].tolist() == [False] * 5 + [True] * 2
     assert closed_days.closed_days("XSAU").closed[week].tolist() == [False] * 4 + [True] * 2 + [False]
@@ -206,8 +210,8 @@ def test_unknown_codes(code):
 
 @pytest.mark.parametrize(
     ("code", "meant"),
-    [("XECB", "XECB"), ("TAR", "XECB"), ("ECB", "XECB"), ("NYSE", "XNYS"), ("GB", "GB-ENG"), ("UK", "GB-ENG"), ("GBR", "GB-ENG"),
-     ("GB-SCT", "GB-SCT"), ("JPN", "JP"), (" XSIF ", "XSIF"), ("QQ", "QQ")],
+    [("XECB", "XECB"), ("TAR", "XECB"), ("ECB", "XECB"), ("NYSE", "XNYS"), ("GB", "GB-ENG"), ("UK", "GB-ENG"),
+     ("GBR", "GB-ENG"), ("GB-SCT", "GB-SCT"), ("JPN", "JP"), (" XSIF ", "XSIF"), ("QQ", "QQ")],
 )  # fmt: skip
 def test_canonical(code, meant):
     assert closed_days.canonical(code) == meant
