@@ -11,9 +11,13 @@ from reconciler.window.widgets import button, label, restyle, row
 
 
 class Banner(QFrame):
-    """One sentence with a button that shows the rest. `asked` is sent when the rest is wanted."""
+    """One sentence with a button that shows the rest.
+
+    `asked` is sent when the rest is wanted, `assign_asked` when the columns of a file that was not recognised are to be assigned.
+    """
 
     asked = Signal()
+    assign_asked = Signal()
 
     def __init__(self) -> None:
         super().__init__()
@@ -21,6 +25,8 @@ class Banner(QFrame):
         self.text = label("", "", wrap=True, selectable=True)
         self.more = button("Show all", "plain", "Show every problem with its place")
         self.more.clicked.connect(self.asked)
+        self.assign = button("Assign columns …", "", "Say what the columns of the file mean, so that it can be read")
+        self.assign.clicked.connect(self.assign_asked)
         self._icon = QLabel()
         close = QToolButton()
         close.setProperty("look", "bare")
@@ -35,23 +41,34 @@ class Banner(QFrame):
         line.addWidget(self._icon)
         line.addWidget(self.text, 1)
         line.addWidget(self.more)
+        line.addWidget(self.assign)
         line.addWidget(close)
-        self._close, self._bad = close, False
+        self._close, self._look = close, "day"
         theme().changed.connect(self._paint_icons)
         self.hide()
 
-    def say(self, text: str, more: bool = False, bad: bool = False) -> None:
+    def say(self, text: str, more: bool = False, bad: bool = False, assign: bool = False) -> None:
         """Shows a sentence; `bad` when nothing could be done, `more` when there is a list behind it."""
-        self._bad = bad
+        self.assign.setVisible(assign)
+        self._show(text, more, "differ" if bad else "day")
+
+    def tell(self, text: str) -> None:
+        """Shows that something was done."""
+        self.assign.hide()
+        self._show(text, False, "proved")
+
+    def _show(self, text: str, more: bool, look: str) -> None:
+        self._look = look
         self.text.setText(text)
         self.setAccessibleName(text)
         self.more.setVisible(more)
-        restyle(self, bad="true" if bad else "false")
+        restyle(self, look=look)
         self._paint_icons()
         self.setVisible(bool(text))
 
     def _paint_icons(self) -> None:
-        self._icon.setPixmap(icon("warning", "differ" if self._bad else "day", 18).pixmap(18, 18))
+        drawing = "done" if self._look == "proved" else "warning"
+        self._icon.setPixmap(icon(drawing, self._look, 18).pixmap(18, 18))
         self._close.setIcon(icon("close", "soft", 14))
 
 

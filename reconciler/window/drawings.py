@@ -36,13 +36,13 @@ class CouponStrip(QWidget):
     def __init__(self) -> None:
         super().__init__()
         self.strip = Strip()
-        self.setMinimumSize(320, 124)
+        self.setMinimumSize(320, 106)
         self.setSizePolicy(QSizePolicy.Policy.Expanding, QSizePolicy.Policy.Fixed)
         self.setAccessibleName("Coupons of this bond")
         theme().changed.connect(self.update)
 
     def sizeHint(self) -> QSize:  # noqa: N802
-        return QSize(560, 124)
+        return QSize(560, 106)
 
     def show_strip(self, strip: Strip) -> None:
         """Draws another bond's coupons."""
@@ -63,7 +63,7 @@ class CouponStrip(QWidget):
             place = (day.astype("datetime64[D]").astype(int) - first) / max(last - first, 1)
             return left + min(max(place, -0.02), 1.03) * (right - left)
 
-        top, height = 44.0, 16.0
+        top, height = 34.0, 14.0
         for number, (start, end) in enumerate(zip(strip.boundaries[:-1], strip.boundaries[1:], strict=True)):
             painter.setPen(Qt.PenStyle.NoPen)
             painter.setBrush(look.colour("accent" if number == strip.next_period else "wash"))
@@ -98,14 +98,14 @@ class CouponStrip(QWidget):
         painter.setPen(QPen(look.colour("differ"), 2))
         if strip.marked is not None:
             x = at(strip.marked)
-            painter.drawLine(QPointF(x, top - 14), QPointF(x, top + height + 8))
+            painter.drawLine(QPointF(x, top - 11), QPointF(x, top + height + 8))
             wide = metrics.horizontalAdvance(strip.marked_words)
-            painter.drawText(QPointF(min(max(x - wide / 2, 0), self.width() - wide), top - 20), strip.marked_words)
+            painter.drawText(QPointF(min(max(x - wide / 2, 0), self.width() - wide), top - 17), strip.marked_words)
         if strip.accrued_words:
             middle = sum(at(day) for day in strip.accrued) / 2 if strip.accrued else self.width() / 2
             wide = metrics.horizontalAdvance(strip.accrued_words)
             x = min(max(middle - wide / 2, 0), self.width() - wide)
-            painter.drawText(QPointF(x, top + height + 44), strip.accrued_words)
+            painter.drawText(QPointF(x, top + height + 42), strip.accrued_words)
 
 
 @dataclass(frozen=True)

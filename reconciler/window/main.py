@@ -44,6 +44,7 @@ class MainWindow(QMainWindow):
         self.loaded: loading.Loaded | None = None
         self.job: jobs.Job | None = None
         self.problems: tuple[Problem | str, ...] = ()
+        self._wanted: tuple[Path, datetime.date] | None = None
         self.setWindowTitle(NAME)
         self.setWindowIcon(icon("reconciler", size=64))
         self.setMinimumSize(960, 600)
@@ -80,6 +81,7 @@ class MainWindow(QMainWindow):
         self.setCentralWidget(ground)
         self.sidebar.page_chosen.connect(self.show_page)
         self.banner.asked.connect(self.actions_by_key["problems"].trigger)
+        self.banner.assign_asked.connect(self.actions_by_key["layout"].trigger)
         self.progress.stopped.connect(self.cancel)
         self._enable()
         self._restore()
@@ -158,11 +160,15 @@ class MainWindow(QMainWindow):
         job = jobs.Job(lambda progress: loading.load(folder, date, progress), "load", self)
         job.succeeded.connect(self.show_loaded)
         job.failed.connect(lambda fault: self.say_failed(f"The morning in {folder.name} could not be loaded.", fault))
-        self._remember_morning = (folder, date)
+        self._wanted = (folder, date)
         if self.loaded is None:
             self.welcome.loading(folder.name)
             self.stack.setCurrentWidget(self.welcome)
         return self.run(job, f"Reading {folder.name}")
+
+    def folder_wanted(self) -> Path | None:
+        """The folder asked for last, whether or not it could be loaded."""
+        return self._wanted[0] if self._wanted else None
 
     def run(self, job: jobs.Job, words: str) -> jobs.Job:
         """Shows a job's progress and runs it."""

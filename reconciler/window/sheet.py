@@ -45,7 +45,10 @@ def texts(column: Words) -> list[str]:
 
 @dataclass(frozen=True)
 class Column:
-    """One column as declared: `show` gives the cells of a page of rows, `rank` an int64 or int32 key for every row."""
+    """One column as declared: `show` gives the cells of a page of rows, `rank` an int64 or int32 key for every row.
+
+    Columns of figures (`right`) and those that `fit` are as wide as what they hold, others share what is left by `stretch`.
+    """
 
     key: str
     title: str
@@ -56,6 +59,7 @@ class Column:
     right: bool = False
     stretch: int = 0
     descending_first: bool = False
+    fit: bool = False
 
 
 @dataclass(frozen=True)

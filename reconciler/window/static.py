@@ -11,7 +11,7 @@ from reconciler.window.sheet import Cell, Column, Fact, Sheet
 
 
 def static_sheet(heads: Sequence[tuple[str, int, bool, int]], rows: Sequence[Sequence[Cell]], help_text: str = "") -> Sheet:
-    """A sheet of ready cells; heads are (title, width, right-aligned, stretch)."""
+    """A sheet of ready cells; heads are (title, width, right-aligned, stretch); width 0 is as wide as what it holds."""
     lines = [tuple(line) for line in rows]
 
     def show(number: int):  # type: ignore[no-untyped-def]  # noqa: ANN202
@@ -24,7 +24,8 @@ def static_sheet(heads: Sequence[tuple[str, int, bool, int]], rows: Sequence[Seq
         return lambda _data, at: Words.of([_copied(lines[i][number]) for i in at.tolist()])
 
     columns = [
-        Column(f"column{i}", title, help_text or title, show(i), rank(i), width, right=right, stretch=stretch)
+        Column(f"column{i}", title, help_text or title, show(i), rank(i), width or 40, right=right, stretch=stretch,
+               fit=not width)
         for i, (title, width, right, stretch) in enumerate(heads)
     ]
     facts = [Fact(title or "fact", "text", told(i)) for i, (title, *_rest) in enumerate(heads)]

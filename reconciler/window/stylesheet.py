@@ -88,7 +88,8 @@ QScrollBar::add-page, QScrollBar::sub-page { background: transparent; }
 
 QFrame#banner { background: @day_wash; border: 1px solid @day; border-radius: 8px; }
 QFrame#banner QLabel { color: @ink; }
-QFrame#banner[bad="true"] { background: @differ_wash; border-color: @differ; }
+QFrame#banner[look="differ"] { background: @differ_wash; border-color: @differ; }
+QFrame#banner[look="proved"] { background: @proved_wash; border-color: @proved; }
 QFrame#notice { background: @proved_wash; border-radius: 8px; }
 QFrame#notice QLabel#told { color: @proved; font-weight: 600; }
 QFrame#notice[look="differ"] { background: @differ_wash; }

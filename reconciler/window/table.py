@@ -193,7 +193,7 @@ class SheetView(QTableView):
         widths = list(self._needed)
         spare = self.viewport().width() - sum(widths)
         # what is left goes to the stretching columns; what is missing is taken from those of words, down to half
-        shares = [column.stretch * (1 if spare > 0 else 0 if column.right else width)
+        shares = [column.stretch * (1 if spare > 0 else 0 if column.right or column.fit else width)
                   for column, width in zip(columns, widths, strict=True)]  # fmt: skip
         if sum(shares):
             widths = [max(width + spare * share // sum(shares), width // 2) for width, share in zip(widths, shares, strict=True)]
@@ -209,7 +209,7 @@ class SheetView(QTableView):
         widths = []
         for column in sheet.columns:
             wide = max(column.width, head.horizontalAdvance(column.title) + 2 * _PADDING + 4)
-            if column.right:
+            if column.right or column.fit:
                 wide = max([wide, *(cell_width(cell) for cell in column.show(sheet.data, rows))])
             widths.append(wide)
         return widths

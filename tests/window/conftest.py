@@ -26,13 +26,22 @@ def own_settings(tmp_path: Path) -> None:
 
 
 @pytest.fixture()
+def made_up_working(monkeypatch: pytest.MonkeyPatch) -> None:
+    """The fabricated morning has no terms: its working and coupons are fabricated too."""
+    from reconciler.procedures import working
+
+    monkeypatch.setattr(working, "working", fabricated.working)
+    monkeypatch.setattr(working, "bond_coupons", fabricated.bond_coupons)
+
+
+@pytest.fixture()
 def loaded() -> Loaded:
     """The small fabricated morning."""
     return arrange(None, fabricated.day(), fabricated.ahead())
 
 
 @pytest.fixture()
-def window(qtbot, loaded: Loaded) -> Iterator[MainWindow]:  # type: ignore[no-untyped-def]  # noqa: ANN001
+def window(qtbot, loaded: Loaded, made_up_working: None) -> Iterator[MainWindow]:  # type: ignore[no-untyped-def]  # noqa: ANN001
     """A window that shows the small morning."""
     theme().start("light")
     made = MainWindow()

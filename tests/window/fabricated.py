@@ -253,3 +253,37 @@ def large_day(rows: int = 1_000_000) -> FabricatedDay:
         overdue_days=pattern.astype(np.int64),
     )  # fmt: skip
     return FabricatedDay(small.date, small.since, small.source, None, items, small.allocations, breaks)
+
+
+def working(_day: Any, item_row: int) -> Any:
+    """What procedures.working.working tells of the first payment of the small morning, and something short of the others."""
+    from reconciler.procedures.working import Line, Strip, Working
+
+    if item_row:
+        return Working("", "", (Line("Payment amount", "198,400.00", note="12,400,000 × 3.20 % / 2"),), ())
+    lines = (
+        Line("Principal", "4,943,750.00", "4,943,750.00", "4,943,750.00", note="5,000,000 × 98.875 %"),
+        Line("Accrued days", "196", "196", "196", "195", frozenset({"Bank"}), "from 15 Sep 2025 to 30 Mar 2026"),
+        Line("Day count", "Act/Act ICMA 196 / 365", "", "", "30/360 195 / 360", frozenset({"Bank"})),
+        Line("Accrued interest", "124,178.08", "124,178.08", "124,178.08", "125,260.42", frozenset({"Bank"}), "4.625 % a year"),
+        Line("Fees", "0.00", "0.00", "0.00", "0.00"),
+        Line("Settlement amount", "5,067,928.08", "5,067,928.08", "5,067,928.08", "5,069,010.42", frozenset({"Bank"})),
+    )
+    days = np.array(["2023-09-15", "2024-09-15", "2025-09-15", "2026-09-15", "2027-09-15"], "datetime64[D]")
+    strip = Strip(tuple(days), (days[2], np.datetime64("2026-03-30")), np.datetime64("2026-03-30"), "settles 30 Mar",
+                  "196 days accrued", 3)  # fmt: skip
+    return Working("Buy 5,000,000 Marlow Gas 4.625 2031", "", lines, ("Terms", "Broker", "Desk", "Bank"), (), strip)
+
+
+def bond_coupons(_day: Any, _bond_row: int, item_row: int = -1) -> Any:
+    """What procedures.working.bond_coupons tells."""
+    from reconciler.procedures.working import COUPONS, Coupons
+
+    ends = np.array([f"{year}-09-15" for year in range(2022, 2032)], "datetime64[D]")
+    moved = np.where(np.is_busday(ends), ends, np.busday_offset(ends, 0, roll="following"))
+    table = records.table(
+        COUPONS, start=ends - 365, end=ends, payment_date=moved,
+        why=["" if a == b else f"{a} is a weekend day" for a, b in zip(ends, moved, strict=True)], days=[365] * 10,
+        ex_date=ends - 7, record_date=ends - 1, face_minor=[500000000] * 10, amount_minor=[23125000] * 10,
+    )  # fmt: skip
+    return Coupons(table, working(_day, 0).strip, 2, 4 if item_row >= 0 else -1)

@@ -160,5 +160,5 @@ def accounts_sheet(day: Any, overview: Any, item_row: int) -> Sheet:
             else:
                 cells.append(Cell(text, strong=name == "amount"))
         rows.append(cells)
-    heads = [("", 140, False, 1), *((party, 92, True, 2) for party in PARTIES)]
+    heads = [("", 0, False, 1), *((party, 92, True, 2) for party in PARTIES)]
     return static_sheet(heads, rows, "What each of the four parties tells about this payment")

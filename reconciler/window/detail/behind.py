@@ -12,6 +12,8 @@ import numpy as np
 
 from reconciler.window import figures
 from reconciler.window.detail.accounts import accounts_sheet, breaks_of
+from reconciler.window.detail.coupons import coupons_sheet
+from reconciler.window.detail.working import working_sheet
 from reconciler.window.drawings import Strip
 from reconciler.window.payments import title_of
 from reconciler.window.sheet import Sheet
@@ -107,13 +109,29 @@ def bond_heading(day: Any, row: int) -> tuple[str, str]:
 
 def working(day: Any, row: int) -> Shown:
     """How the payment is reckoned, what was found, what to do next."""
-    from reconciler.window.detail.working import working_sheet
+    from reconciler.procedures import working as procedure
 
     found = breaks_of(day, row)
+    told = procedure.working(day, row)
     first = found[0] if found else None
-    tone = {"proved": "", "likely": "day"}.get(first["certainty"], "differ") if first else ""
-    return Shown(working_sheet([], ""), Strip(), first["explanation"] if first else "", "", tone,
+    certainty = first["certainty"] if first else ""
+    look = {"proved": "differ", "likely": "day", "open": "silent"}.get(certainty, "")
+    words = {"proved": "Proved. ", "likely": "Likely. ", "open": "Open. "}.get(certainty, "")
+    more = [*told.notes]
+    if len(found) > 1:
+        more.append(f"{figures.count(len(found) - 1, 'other break')} on this payment: "
+                    + ", ".join(sorted({one["break"] for one in found[1:]})) + ".")  # fmt: skip
+    sentence = (first["cause"] or first["explanation"]) if first else "Everybody who speaks agrees with this."
+    if first and first["cause"] and first["explanation"]:
+        more.insert(0, first["explanation"])
+    return Shown(working_sheet(told, {one["party"] for one in found}), strip_of(told.strip),
+                 f"{words}{sentence[:1].upper()}{sentence[1:]}", " ".join(more), look,
                  first["next_step"] if first else "")  # fmt: skip
+
+
+def strip_of(told: Any) -> Strip:
+    """The procedure's strip as the drawing takes it."""
+    return Strip(told.boundaries, told.accrued, told.marked, told.marked_words, told.accrued_words, told.next_period)
 
 
 def coupons(day: Any, row: int) -> tuple[Sheet, Strip]:
@@ -123,6 +141,7 @@ def coupons(day: Any, row: int) -> tuple[Sheet, Strip]:
 
 def bond_coupons(day: Any, bond_row: int, item_row: int = -1) -> tuple[Sheet, Strip]:
     """A bond's coupons as list and strip."""
-    from reconciler.window.static import static_sheet
+    from reconciler.procedures import working as procedure
 
-    return static_sheet([("Coupon", 100, False, 1)], []), Strip()
+    told = procedure.bond_coupons(day, bond_row, item_row)
+    return coupons_sheet(told.table, told.digits, told.shown), strip_of(told.strip)

@@ -36,7 +36,7 @@ class DetailPane(QFrame):
         for text in ("The four accounts", "Working", "Coupons"):
             self.tabs.addTab(text)
         self.facts = _list("The four accounts")
-        self.working = _list("Working", two_lines=True)
+        self.working = _list("Working")
         self.coupons = _list("Coupons of this bond")
         self.strip, self.wide_strip = CouponStrip(), CouponStrip()
         self.proof, self.next_step = Notice(), label("", "", wrap=True, selectable=True)
@@ -152,7 +152,7 @@ class DetailPane(QFrame):
         line = QHBoxLayout(page)
         line.setContentsMargins(8, 6, 20, 4)
         line.setSpacing(24)
-        line.addWidget(self.working, 1)
+        line.addWidget(self.working, 7)
         inner = QWidget()
         inner.setObjectName("scrolled")
         column = QVBoxLayout(inner)
@@ -161,11 +161,11 @@ class DetailPane(QFrame):
         column.addWidget(self.proof)
         column.addWidget(label("What next", "caption"))
         column.addWidget(self.next_step)
-        column.addSpacing(8)
+        column.addSpacing(4)
         column.addWidget(label("Coupons of this bond", "caption"))
         column.addWidget(self.strip)
         column.addStretch(1)
-        line.addWidget(scrolled(inner, "What was found and what next"), 1)
+        line.addWidget(scrolled(inner, "What was found and what next"), 5)
         return page
 
     def _coupons_page(self) -> QWidget:
