@@ -208,7 +208,8 @@ def coupons_between(terms: Terms, rows: Array, first: np.datetime64, last: np.da
     # Adjustments move a payment by days, never by weeks: look a little wider, then hold the payment date against the window.
     margin = np.timedelta64(20, "D")
     low, high = np.datetime64(first, "D") - margin, np.datetime64(last, "D") + margin
-    found_rows, found_dates = _coupon_dates(terms, rows, np.full(len(rows), low), np.full(len(rows), high))
+    places, found_dates = coupon_dates(terms, rows, np.full(len(rows), low), np.full(len(rows), high))
+    found_rows = rows[places]
     paid = payment_dates(terms, found_rows, found_dates)
     keep = (paid >= first) & (paid <= last)
     return Coupons(found_rows[keep], found_dates[keep], paid[keep])
@@ -220,12 +221,13 @@ def all_coupons(terms: Terms, rows: Array) -> Coupons:
     rows = rows[(terms.frequency[rows] > 0) & terms.sound[rows]]
     begin = np.where(np.isnat(terms.accrual_start[rows]), terms.told_first_coupon[rows] - 1, terms.accrual_start[rows])
     begin = np.where(np.isnat(begin), np.datetime64("1970-01-01"), begin)
-    found_rows, dates = _coupon_dates(terms, rows, begin + 1, terms.maturity[rows])
+    places, dates = coupon_dates(terms, rows, begin + 1, terms.maturity[rows])
+    found_rows = rows[places]
     return Coupons(found_rows, dates, payment_dates(terms, found_rows, dates))
 
 
-def _coupon_dates(terms: Terms, rows: Array, low: Array, high: Array) -> tuple[Array, Array]:
-    """Unadjusted coupon dates in [low, high] of each row, flat, by row and date."""
+def coupon_dates(terms: Terms, rows: Array, low: Array, high: Array) -> tuple[Array, Array]:
+    """Unadjusted coupon dates in [low, high] of each row: place among `rows` and date, flat, in that order."""
     grid = Grid(terms, rows)
     first = terms.first_coupon[rows]
     low = np.maximum(low, np.where(np.isnat(first), low, first))
@@ -247,4 +249,4 @@ def _coupon_dates(terms: Terms, rows: Array, low: Array, high: Array) -> tuple[A
         dates = np.concatenate([dates, maturity[stub], first[off]])
         order = np.lexsort((dates, owner))
         owner, dates = owner[order], dates[order]
-    return rows[owner], dates
+    return owner, dates
