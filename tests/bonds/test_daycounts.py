@@ -75,7 +75,9 @@ def test_laws(name, start, span):
         # The end of February is stretched to the 30th, so that 1 March can show fewer days than it; Canada changes
         # rules.
         assert days == sorted(days) and ratio == sorted(ratio)
-    assert max(days) <= span + 3 and abs(ratio[-1] - Fraction(span, 365)) < Fraction(1, 60)
+    # Business days come in lumps: half a year in Brazil has 118 to 131 of them.
+    loose = Fraction(1, 25) if name == "Bus/252" else Fraction(1, 60)
+    assert max(days) <= span + 2 and abs(ratio[-1] - Fraction(span, 365)) < loose
 
 
 @pytest.mark.parametrize("name", ["30E/360 ISDA"])
@@ -242,14 +244,18 @@ def test_long_first_coupon_against_quantlib():
     """A first coupon of 16 months paid half-yearly: four months of one half-year, then two whole ones."""
     schedule = [date(2023, 3, 15), date(2023, 9, 15), date(2024, 3, 15), date(2024, 9, 15)]
     issue, first = date(2023, 5, 20), schedule[-1]
-    bond = QuantLib.FixedRateBond(
-        0, 100.0,
-        QuantLib.Schedule(
-            quantlib_date(issue), quantlib_date(date(2026, 9, 15)), QuantLib.Period(6, QuantLib.Months),
-            QuantLib.NullCalendar(), QuantLib.Unadjusted, QuantLib.Unadjusted, QuantLib.DateGeneration.Backward, False, quantlib_date(first),
-        ),
-        [0.05], QuantLib.ActualActual(QuantLib.ActualActual.ISMA),
-    )  # fmt: skip
+    dates = QuantLib.Schedule(
+        quantlib_date(issue),
+        quantlib_date(date(2026, 9, 15)),
+        QuantLib.Period(6, QuantLib.Months),
+        QuantLib.NullCalendar(),
+        QuantLib.Unadjusted,
+        QuantLib.Unadjusted,
+        QuantLib.DateGeneration.Backward,
+        False,
+        quantlib_date(first),
+    )
+    bond = QuantLib.FixedRateBond(0, 100.0, dates, [0.05], QuantLib.ActualActual(QuantLib.ActualActual.ISMA))
     parts = {"first_days": (schedule[1] - issue).days, "first_length": (schedule[1] - schedule[0]).days}
     zero, one = np.zeros(1, np.int64), np.ones(1, np.int64)
     period = Period(

@@ -83,9 +83,11 @@ def test_record_and_ex_dividend_fit_together():
 # Settlement terms of the ex-dividend rules; gilts, Australia and South Africa as the contract states them.
 @pytest.mark.parametrize(
     ("code", "ex_dividend", "record"),
-    [("UK_GILT", "6b", "7b"), ("UK_ILG3", "6b", "7b"), ("AU_TB", "7c", "8c"), ("ZA_BOND", "10c", "11c"),
-     ("NZ_GB", "10c", "11c"), ("SG_SGS", "2b", "3b"), ("SE_GOVT", "4b", "5b"), ("HU_GB", "1b", "2b"), ("DK_GOVT", "", "1b"), ("PL_POLGB", "", "3b"),
-     ("DE_BUND", "", "1b"), ("US_TNOTE", "", "1b")],
+    [
+        ("UK_GILT", "6b", "7b"), ("UK_ILG3", "6b", "7b"), ("AU_TB", "7c", "8c"), ("ZA_BOND", "10c", "11c"),
+        ("NZ_GB", "10c", "11c"), ("SG_SGS", "2b", "3b"), ("SE_GOVT", "4b", "5b"), ("HU_GB", "1b", "2b"),
+        ("DK_GOVT", "", "1b"), ("PL_POLGB", "", "3b"), ("DE_BUND", "", "1b"), ("US_TNOTE", "", "1b"),
+    ],
 )  # fmt: skip
 def test_ex_dividend_rules(code, ex_dividend, record):
     market = MARKETS[number(code)]
