@@ -8,6 +8,7 @@ from __future__ import annotations
 import csv
 import functools
 from pathlib import Path
+from typing import Any
 
 _BESIDE = Path(__file__).resolve().parent.parent / "resources"
 _INSIDE = Path(__file__).resolve().parent / "_resources"
@@ -23,3 +24,16 @@ def table(name: str) -> tuple[dict[str, str], ...]:
     """The rows of `resources/tables/NAME.csv` as dictionaries of text, in file order; lines that begin with # are notes."""
     with (folder() / "tables" / f"{name}.csv").open(encoding="utf-8", newline="") as lines:
         return tuple(csv.DictReader(line for line in lines if not line.startswith("#")))
+
+
+@functools.cache
+def arrays(name: str) -> dict[str, Any]:
+    """The numpy arrays of `resources/tables/NAME.npz` by name; empty when the file is not there (while it is being made)."""
+    # numpy is not imported at the top: listing and starting need no arrays.
+    import numpy as np
+
+    file = folder() / "tables" / f"{name}.npz"
+    if not file.exists():
+        return {}
+    with np.load(file, allow_pickle=False) as packed:
+        return {key: packed[key] for key in packed.files}

@@ -122,21 +122,18 @@ class _Shipped:
 @functools.cache
 def _shipped() -> _Shipped:
     """The shipped calendars; none when the file is absent, as it is while it is being made."""
-    file = resources.folder() / "tables" / "calendars.npz"
-    if not file.exists():
+    pack = resources.arrays("calendars")
+    if not pack:
         nothing = np.empty(0, np.int64)
         return _Shipped({}, nothing, nothing, nothing, [], {})
-    with np.load(file, allow_pickle=False) as pack:
-        codes = pack["codes"].tolist()
-        aliases = dict(zip(pack["aliases"].tolist(), pack["alias_of"].tolist(), strict=True))
-        return _Shipped(
-            {code: number for number, code in enumerate(codes)},
-            pack["offsets"],
-            pack["days"],
-            pack["name_of"],
-            pack["names"].tolist(),
-            aliases,
-        )
+    return _Shipped(
+        places={code: number for number, code in enumerate(pack["codes"].tolist())},
+        offsets=pack["offsets"],
+        days=pack["days"],
+        name_of=pack["name_of"],
+        names=pack["names"].tolist(),
+        aliases=dict(zip(pack["aliases"].tolist(), pack["alias_of"].tolist(), strict=True)),
+    )
 
 
 # --- the package
