@@ -46,6 +46,11 @@ def _rates(terms: Terms, rows: Array, period_start: Array) -> Array:
     return in_force(terms.rate_offsets, terms.rate_from, terms.rate_e9s, rows, period_start, terms.rate_e9[rows])
 
 
+def _fixed_on(periods: Periods) -> Array:
+    """The day whose rate a period pays: its start, or the day that start was moved on to (fixings are told for either)."""
+    return np.where(np.isnat(periods.start), NAT, np.maximum(periods.start, periods.accrual_start))
+
+
 def factors(terms: Terms, rows: Array, dates: Array) -> Array:
     """Remaining factor or index ratio in force on each date, x 10^12."""
     return in_force(terms.factor_offsets, terms.factor_from, terms.factor_e12s, rows, dates, np.full(len(rows), ONE))
@@ -67,7 +72,7 @@ def accrued(terms: Terms, rows: Array, settle: Array, face_minor: Array) -> Accr
     or the day lies on or after maturity; `minor` is MISSING there.
     """
     rows, settle = np.asarray(rows), np.asarray(settle, "datetime64[D]")
-    periods = schedules.periods_at(terms, rows, settle)
+    periods = schedules.periods_accruing(terms, rows, settle)
     start, end = periods.accrual_start, periods.accrual_end
     pays = ~np.isnat(periods.start)
     until = np.minimum(np.maximum(settle, start), end)
@@ -81,7 +86,7 @@ def accrued(terms: Terms, rows: Array, settle: Array, face_minor: Array) -> Accr
     if len(some):
         ex[some] = settle[some] >= schedules.ex_dates(terms, rows[some], periods.end[some])
         days, above, below = _less_coupon(terms, rows, periods, np.flatnonzero(ex), days, above, below)
-    rate = _rates(terms, rows, periods.start)
+    rate = _rates(terms, rows, _fixed_on(periods))
     factor = factors(terms, rows, settle)
     sound = terms.sound[rows] & ~np.isnat(settle) & (settle < terms.maturity[rows]) & ~(pays & (rate == MISSING))
     rate = np.where(pays, rate, 0)
@@ -159,7 +164,7 @@ def coupon_amounts(terms: Terms, rows: Array, unadjusted: Array, face_minor: Arr
     rows = np.asarray(rows)
     periods = schedules.period_ending(terms, rows, unadjusted)
     above, below = coupon_fraction(terms, rows, periods)
-    rate = _rates(terms, rows, periods.start)
+    rate = _rates(terms, rows, _fixed_on(periods))
     at = np.where(terms.kind[rows] == 4, np.asarray(unadjusted, "datetime64[D]"), periods.start)
     factor = factors(terms, rows, at)
     known = terms.sound[rows] & (rate != MISSING) & ~np.isnat(periods.start)

@@ -143,6 +143,30 @@ def period_ending(terms: Terms, rows: Array, coupon_dates: Array) -> Periods:
     return periods_at(terms, rows, np.asarray(coupon_dates, "datetime64[D]") - 1)
 
 
+def periods_accruing(terms: Terms, rows: Array, dates: Array) -> Periods:
+    """The period in which interest accrues on each day: as `periods_at`, but by adjusted boundaries where the accrual is adjusted.
+
+    A coupon date moved back from Saturday to Friday opens the new period on that Friday; one moved on to Monday keeps the old
+    period open until then.
+    """
+    rows, dates = np.asarray(rows), np.asarray(dates, "datetime64[D]")
+    found = periods_at(terms, rows, dates)
+    if not terms.accrual_adjusted[rows].any():
+        return found
+    # On or after maturity nothing accrues, so a last period that was moved is left as it is.
+    late = (dates >= found.accrual_end) & (found.end < terms.maturity[rows])
+    early = (dates < found.accrual_start) & (found.start > terms.accrual_start[rows])
+    moved = np.flatnonzero(terms.accrual_adjusted[rows] & (late | early))
+    if len(moved):
+        inside = np.where(late[moved], found.end[moved], found.start[moved] - 1)
+        other = periods_at(terms, rows[moved], inside)
+        columns = {name: column.copy() for name, column in vars(found).items()}
+        for name, column in columns.items():
+            column[moved] = getattr(other, name)
+        found = Periods(**columns)
+    return found
+
+
 def parts(terms: Terms, rows: Array, start: Array, end: Array, periods: Periods) -> Period:
     """What the day counts ask of the period that [start, end) lies in (see daycounts.Period)."""
     one = np.ones(len(rows), np.int64)
