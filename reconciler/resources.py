@@ -1,6 +1,6 @@
 """Shipped tables, layouts and icons are found here and nowhere else.
 
-In a checkout they lie in `resources/` beside the package; in an installed wheel the same folder lies inside the package.
+In a checkout they lie in `resources/` beside the package; in an installed wheel the same folder lies inside it.
 """
 
 from __future__ import annotations
@@ -21,14 +21,14 @@ def folder() -> Path:
 
 @functools.cache
 def table(name: str) -> tuple[dict[str, str], ...]:
-    """The rows of `resources/tables/NAME.csv` as dictionaries of text, in file order; lines that begin with # are notes."""
+    """The rows of `resources/tables/NAME.csv` as dictionaries of text, in file order; lines after a # are notes."""
     with (folder() / "tables" / f"{name}.csv").open(encoding="utf-8", newline="") as lines:
         return tuple(csv.DictReader(line for line in lines if not line.startswith("#")))
 
 
 @functools.cache
 def arrays(name: str) -> dict[str, Any]:
-    """The numpy arrays of `resources/tables/NAME.npz` by name; empty when the file is not there (while it is being made)."""
+    """The numpy arrays of `resources/tables/NAME.npz` by name; empty while that file is not there (being made)."""
     # numpy is not imported at the top: listing and starting need no arrays.
     import numpy as np
 

@@ -100,8 +100,7 @@ def weekends(days_of_week: tuple[int, ...] = (5, 6)) -> Array:
     return np.isin(WEEKDAY, days_of_week)
 
 
-# --- shipped calendars
-# ----------------------------------------------------------------------------------------------------
+# --- shipped calendars ---------------------------------------------------------------------------------------------
 
 
 @dataclass(frozen=True)
@@ -136,8 +135,7 @@ def _shipped() -> _Shipped:
     )
 
 
-# --- the package
-# ----------------------------------------------------------------------------------------------------------
+# --- the package ---------------------------------------------------------------------------------------------------
 
 
 def from_package(code: str) -> tuple[Array, list[str], Array]:
@@ -190,8 +188,7 @@ def _weekend(found: Any) -> Array:
     return np.array([found._is_weekend(start + timedelta(n)) for n in range(DAYS)])
 
 
-# --- corrections
-# ----------------------------------------------------------------------------------------------------------
+# --- corrections ---------------------------------------------------------------------------------------------------
 
 
 def corrections(code: str) -> list[tuple[int, bool, str]]:

@@ -131,8 +131,7 @@ def test_what_a_convention_needs_must_be_given(name):
         fraction(np.array([NUMBERS[name]]), array(date(2025, 1, 1)), array(date(2025, 2, 1)))
 
 
-# --- random dates against QuantLib
-# ----------------------------------------------------------------------------------------
+# --- random dates against QuantLib ---------------------------------------------------------------------------------
 
 SIZE = 4_000
 
