@@ -117,7 +117,15 @@ class Bond:
     """Rates of stepped and floating bonds; factors of amortising, index ratios of linked ones."""
     market: str = ""
     written: dict[str, str] = field(default_factory=dict)
-    sound: bool = True
+    old_cycle: tuple[date, int] | None = None
+    """Trades dealt before this day settled in so many open days."""
+
+    def settles(self, traded: date) -> date:
+        """The settlement date of a trade, where the market has a cycle (two days where none is told)."""
+        days = 2 if self.settlement_days is None else self.settlement_days
+        if self.old_cycle and traded < self.old_cycle[0]:
+            days = self.old_cycle[1]
+        return self.calendar.walk(traded, days)
 
 
 @dataclass(frozen=True)
@@ -235,11 +243,14 @@ def fraction(bond: Bond, period: Period, start: date, end: date, day_count: str 
             return Fraction(days, 366 if _leap_days(period.counted_from, period.counted_to) else 365)
         return Fraction(days, 366 if month_lengths.isleap(period.counted_to.year) else 365)
     if rule == "Act/365 Canada":
+        # a whole half-year is half the coupon, also one of 181 days (market pages: always exactly c/2)
+        if days == (period.counted_to - period.counted_from).days and period.regular:
+            return Fraction(1, bond.frequency)
         if days < Fraction(365, bond.frequency):
             return Fraction(days, 365)
         return Fraction(1, bond.frequency) - Fraction((period.counted_to - end).days, 365)
     if rule == "NL/365":
-        return Fraction(days - _leap_days(start - ONE_DAY, end - ONE_DAY), 365)
+        return Fraction(days - _leap_days(start, end), 365)
     if rule == "Bus/252":
         return Fraction(bond.calendar.count(start, end), 252)
     if rule.startswith("30"):
@@ -252,7 +263,7 @@ def days_counted(bond: Bond, start: date, end: date, day_count: str = "") -> int
     if rule.startswith("30"):
         return _thirty(rule, start, end, bond.maturity)
     if rule == "NL/365":
-        return (end - start).days - _leap_days(start - ONE_DAY, end - ONE_DAY)
+        return (end - start).days - _leap_days(start, end)
     return bond.calendar.count(start, end) if rule == "Bus/252" else (end - start).days
 
 

@@ -128,7 +128,7 @@ def deal(scene: Scene, bond: Bond, number: int) -> Trade | None:
     day = scene.since + timedelta(days=rng.randint(-2, (scene.today - scene.since).days))
     if not bond.calendar.is_open(day):
         return None
-    settle = bond.calendar.walk(day, 2 if bond.settlement_days is None else bond.settlement_days)
+    settle = bond.settles(day)
     if settle < scene.since or not tradeable(bond, settle):
         return None
     broker, account, side = rng.choice(BROKERS), rng.choice(ACCOUNTS), rng.choice((1, -1))

@@ -89,7 +89,8 @@ def _bill(s: Scene) -> Bond:
 
 
 def _bund(s: Scene) -> Bond:
-    bond = s.plain("EUR", "XECB", 1, market="DE_BUND")
+    bond = s.plain("EUR", "XECB", 1, market="DE_BUND", settlement_days=1)
+    bond.old_cycle = (date(2027, 10, 11), 2)
     names = ("currency", "frequency", "day_count", "calendar", "settlement_days", "payment_adjustment", "quote")
     bond.written = dict.fromkeys(names, "")
     return bond
@@ -112,6 +113,28 @@ def _floater(s: Scene, currency: str, calendar: str, day_count: str) -> Bond:
     first = [p for p in periods(bond) if (p.end - p.start).days > 45]
     bond.first_coupon = first[0].end
     return s.steps(bond, lambda n: Fraction(s.rng.randint(1_00000, 5_00000), 100000))
+
+
+def _company(s: Scene) -> Bond:
+    """Its market says how it settles: T+2 until 27 May 2024, T+1 from the 28th."""
+    bond = s.plain("USD", "XFED", 2, day_count="30/360", settlement_days=1, market="US_CORP")
+    bond.old_cycle = (date(2024, 5, 28), 2)
+    bond.written = dict.fromkeys(("day_count", "settlement_days", "currency", "payment_adjustment", "quote", "redemption_price"), "")
+    return bond
+
+
+def _month_end_floater(s: Scene) -> Bond:
+    """Coupon dates on month ends, moved back into the month where it ends on a weekend, and interest moved with them."""
+    last = date(s.today.year, s.today.month, 1) - timedelta(days=1)
+    maturity = months_on(last, 12 * s.rng.randint(2, 8), True)
+    issued = months_on(maturity, -12 * (maturity.year - s.today.year + 2), True)
+    bond = s.new("EUR", "XECB", "floating", maturity, issued, frequency=4, day_count="Act/360", adjusted=True, end_of_month=True,
+                 payment_adjustment="modified following")  # fmt: skip
+    bond.first_coupon = next(p.end for p in periods(bond) if (p.end - p.start).days > 45)
+    s.steps(bond, lambda n: Fraction(s.rng.randint(1_00000, 5_00000), 100000))
+    if s.rng.random() < 0.5:
+        bond.steps = [(payment_date(bond, day), rate) for day, rate in bond.steps]
+    return bond
 
 
 def _odd_first(s: Scene, currency: str, calendar: str, frequency: int, day_count: str, long: bool) -> Bond:
@@ -217,6 +240,8 @@ KINDS: dict[str, Callable[[Scene], Bond]] = {
     "premium": lambda s: _maturing(s, "EUR", "XECB", 1, redemption_price=Fraction(205, 2)),
     "maturing": lambda s: _maturing(s, "USD", "XSIF", 2, settlement_days=1),
     "maturing gilt": lambda s: _maturing(s, "GBP", "GB", 2, settlement_days=1, ex_dividend="6b", record="7b"),
+    "company by its market": _company,
+    "month-end floater": _month_end_floater,
     "dollar floater": lambda s: _floater(s, "USD", "XSIF", "Act/360"),
     "euro floater": lambda s: _floater(s, "EUR", "XECB", "Act/360"),
     "sterling floater": lambda s: _floater(s, "GBP", "XLON", "Act/365F"),

@@ -120,7 +120,10 @@ class World:
 
 
 def build(seed: int, trades: int = 300, today: date = date(2026, 3, 31), planted: float = 0.25) -> World:
-    """A morning of about `trades` trades, a share of them with a planted fault, and coupons and redemptions to match."""
+    """A morning of about `trades` trades, a share of them with a planted fault, and coupons and redemptions to match.
+
+    With a share of 0 nothing at all is wrong.
+    """
     rng = random.Random(seed)
     since = today - timedelta(days=14)
     scene = Scene(rng, since, today, CLOSINGS)
@@ -144,8 +147,9 @@ def build(seed: int, trades: int = 300, today: date = date(2026, 3, 31), planted
     _plant_trades(world, rng, planted)
     _plant_dues(world, rng, planted)
     _gather(world)
-    _odd_bonds(world, scene, rng)
-    _loose_entries(world, rng)
+    if planted:
+        _odd_bonds(world, scene, rng)
+        _loose_entries(world, rng)
     _booked(world, rng)
     return world
 
