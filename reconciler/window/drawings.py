@@ -7,6 +7,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass, field
+from typing import TYPE_CHECKING
 
 import numpy as np
 from PySide6.QtCore import QPointF, QRect, QRectF, QSize, Qt
@@ -15,6 +16,9 @@ from PySide6.QtWidgets import QSizePolicy, QWidget
 
 from reconciler.window import figures
 from reconciler.window.theme import SEMIBOLD, theme
+
+if TYPE_CHECKING:
+    from reconciler.procedures.ahead import Bar
 
 
 @dataclass(frozen=True)
@@ -108,18 +112,6 @@ class CouponStrip(QWidget):
             painter.drawText(QPointF(x, top + height + 42), strip.accrued_words)
 
 
-@dataclass(frozen=True)
-class LadderBar:
-    """What one currency pays and receives on one day, minor units."""
-
-    day: np.datetime64
-    currency: str
-    received: int
-    paid: int
-    digits: int
-    payments: int
-
-
 class CashLadder(QWidget):
     """Money in above the line and out below it, a lane per currency and a column per day; each lane has its own scale."""
 
@@ -127,14 +119,14 @@ class CashLadder(QWidget):
 
     def __init__(self) -> None:
         super().__init__()
-        self.bars: Sequence[LadderBar] = ()
+        self.bars: Sequence[Bar] = ()
         self.days: list[np.datetime64] = []
         self.currencies: list[str] = []
         self.setAccessibleName("Cash ladder")
         self.setMouseTracking(True)
         theme().changed.connect(self.update)
 
-    def show_bars(self, bars: Sequence[LadderBar]) -> None:
+    def show_bars(self, bars: Sequence[Bar]) -> None:
         """Draws other figures."""
         self.bars = bars
         self.days = sorted({bar.day for bar in bars})
@@ -147,7 +139,7 @@ class CashLadder(QWidget):
         self.update()
 
     @staticmethod
-    def words(bar: LadderBar) -> str:
+    def words(bar: Bar) -> str:
         """One bar in words."""
         net = figures.amount(bar.received - bar.paid, bar.digits, signed=True)
         return f"{figures.date(bar.day)} {bar.currency} {net} from {figures.count(bar.payments, 'payment')}"
@@ -176,7 +168,7 @@ class CashLadder(QWidget):
     def _axis_top(self) -> float:
         return min((self.height() - self.AXIS) / len(self.currencies), 96) * len(self.currencies) + 6
 
-    def _lane(self, painter: QPainter, bars: list[LadderBar], room: QRect, step: float) -> None:
+    def _lane(self, painter: QPainter, bars: list[Bar], room: QRect, step: float) -> None:
         look = theme()
         digits = bars[0].digits
         net = sum(bar.received - bar.paid for bar in bars)

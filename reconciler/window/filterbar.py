@@ -8,7 +8,7 @@ from PySide6.QtWidgets import QHBoxLayout, QMenu, QToolButton, QWidget
 
 from reconciler.window import figures
 from reconciler.window.sheet import Facet, Sheet
-from reconciler.window.widgets import button, choice_button, label, restyle
+from reconciler.window.widgets import button, choice_button, discard, label, restyle
 
 _MOST = 40  # words listed in one menu; what is rarer is found by searching
 
@@ -49,9 +49,10 @@ class FilterBar(QWidget):
         """Offers the filters of a list."""
         self._sheet = sheet
         for old in self._buttons.values():
-            old.deleteLater()
+            self._line.removeWidget(old)
+            discard(old)
         self._buttons = {}
-        for place, facet in enumerate(f for f in sheet.facets.values() if len(f.words) > 1):
+        for place, facet in enumerate(f for f in sheet.facets.values() if len(f.words) > 1 and sheet.length):
             made = choice_button(f"{facet.title}  ▾")
             made.setAccessibleName(f"Filter by {facet.title.lower()}")
             made.setToolTip(f"Show only some: {facet.title.lower()}")
@@ -91,7 +92,9 @@ class FilterBar(QWidget):
         chosen = sheet.chosen.get(facet.key, ())
         for number in order:
             word = facet.words[number]
-            action = QAction(f"{word}   {counts[number]:,}".replace("&", "&&"), menu)
+            if not counts[number] and word not in chosen:
+                continue
+            action = QAction(f"{word}\t{counts[number]:,}".replace("&", "&&"), menu)
             action.setCheckable(True)
             action.setChecked(word in chosen)
             action.triggered.connect(lambda on, word=word: self._tick(facet.key, word, on))

@@ -10,7 +10,7 @@ from PySide6.QtWidgets import QAbstractButton, QHBoxLayout, QLineEdit, QSizePoli
 
 from reconciler.window import figures
 from reconciler.window.theme import SEMIBOLD, icon, theme
-from reconciler.window.widgets import ShortLabel, action_button, label
+from reconciler.window.widgets import ShortLabel, action_button, discard, label
 
 _PAUSE = 40  # milliseconds after the last letter before a long list is narrowed
 
@@ -158,7 +158,7 @@ class Header(QWidget):
         """One card per currency with a net difference, in the order of their most urgent breaks."""
         for old in self._cards:
             self._lower.removeWidget(old)
-            old.deleteLater()
+            discard(old)
         self._cards = []
         tip = ("What the bank booked less what the terms say, over all payments with a break; missing cash counts in full. "
                "Click to show only this currency.")  # fmt: skip

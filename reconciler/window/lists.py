@@ -13,6 +13,7 @@ import numpy as np
 
 from reconciler.records import MISSING, Table, Words
 from reconciler.window import figures
+from reconciler.window.payment_cells import title_of
 from reconciler.window.search import Index
 from reconciler.window.sheet import Cell, Column, Facet, Fact, Rows, Sheet, facet_of, texts
 
@@ -199,9 +200,28 @@ def rejects_sheet(rejects: Table) -> Sheet:
 
 # --- payments ahead ----------------------------------------------------------------------------------------------------------
 
+
+class Coming(Records):
+    """The payments ahead, with the names of their bonds."""
+
+    def __init__(self, table: Table, digits: np.ndarray, year: int, names: Words) -> None:
+        super().__init__(table, digits, year)
+        self.names = names
+
+
+def _what(data: Coming, at: Rows) -> list[Cell]:
+    names, kinds, tickets = (texts(column.take(at)) for column in (data.names, data.table["kind"], data.table["ticket"]))
+    digits = data.digits[at].tolist()
+    return [
+        Cell(title_of(kinds[i], side, figures.face(face, digits[i]), names[i]) + (f"  ·  {tickets[i]}" if tickets[i] else ""),
+             strong=True)
+        for i, (side, face) in enumerate(zip(data.table["side"][at].tolist(), data.table["face_minor"][at].tolist(), strict=True))
+    ]  # fmt: skip
+
+
 AHEAD_COLUMNS: tuple[Column, ...] = (
     date_column("date", "Day", "The day the terms say it is paid", 110),
-    text_column("what", "Payment", "What is paid", 320, stretch=3, strong=True),
+    Column("what", "Payment", "What is paid", _what, lambda data: data.names.rank(), 320, stretch=3),
     text_column("kind", "Kind", "Trade, coupon or redemption", 100),
     text_column("account", "Account", "The account it is paid to", 140, stretch=1),
     text_column("currency", "Currency", "The currency it is paid in", 80),
@@ -209,13 +229,17 @@ AHEAD_COLUMNS: tuple[Column, ...] = (
 )
 
 AHEAD_FACTS = [
-    ("date", "date", "date"), ("what", "payment", "text"), ("kind", "kind", "text"), ("account", "account", "text"),
-    ("bond", "bond", "text"), ("currency", "currency", "text"), ("amount_minor", "amount", "amount"),
+    ("date", "date", "date"), ("kind", "kind", "text"), ("account", "account", "text"), ("ticket", "ticket", "text"),
+    ("bond", "bond", "text"), ("face_minor", "face", "amount"), ("currency", "currency", "text"),
+    ("amount_minor", "amount", "amount"),
 ]  # fmt: skip
 
 
-def ahead_sheet(payments: Table, digits: np.ndarray, year: int) -> Sheet:
-    """The payments of the coming days."""
+def ahead_sheet(payments: Table, digits: np.ndarray, year: int, bonds: Table) -> Sheet:
+    """The payments of the coming days (procedures.ahead.AHEAD)."""
     facets = _facets(payments, [("kind", "Kind"), ("currency", "Currency"), ("account", "Account")])
-    index = index_of(payments, digits)
-    return Sheet(Records(payments, digits, year), len(payments), AHEAD_COLUMNS, facts_of(payments, AHEAD_FACTS), index, facets)
+    told = bonds["description"].take(payments["bond_row"])
+    names = told.where(told.known(), payments["bond"])
+    index = index_of(payments.with_columns(description=names), digits)
+    data = Coming(payments, digits, year, names)
+    return Sheet(data, len(payments), AHEAD_COLUMNS, facts_of(payments, AHEAD_FACTS), index, facets)

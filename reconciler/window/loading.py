@@ -8,7 +8,6 @@ from __future__ import annotations
 
 import datetime
 import re
-from collections.abc import Sequence
 from dataclasses import dataclass, field
 from pathlib import Path
 from typing import Any
@@ -16,21 +15,10 @@ from typing import Any
 import numpy as np
 
 from reconciler.problems import Problem
-from reconciler.window.drawings import LadderBar
 from reconciler.window.jobs import Progress
 from reconciler.window.lists import ahead_sheet, bonds_sheet, files_sheet, rejects_sheet
 from reconciler.window.payments import payments_sheet
 from reconciler.window.sheet import Sheet
-
-
-@dataclass(frozen=True)
-class Ahead:
-    """The payments of the coming days: the list's table with the digits of each row, and the ladder's bars."""
-
-    table: Any
-    digits: np.ndarray
-    bars: Sequence[LadderBar]
-    until: Any
 
 
 @dataclass(frozen=True)
@@ -40,7 +28,7 @@ class Loaded:
     folder: Path | None
     day: Any
     overview: Any
-    ahead: Ahead
+    ahead: Any
     sheets: dict[str, Sheet] = field(default_factory=dict)
 
     @property
@@ -64,8 +52,6 @@ def arrange(folder: Path | None, day: Any, coming: Any) -> Loaded:
 
     seen = overview(day)
     year = int(str(np.datetime64(day.date, "Y")))
-    bars = [LadderBar(*bar) for bar in coming.bars]
-    ahead = Ahead(coming.payments, coming.digits, bars, coming.until)
     sheets = {
         "breaks": payments_sheet(day, seen, ("break",)),
         "due": payments_sheet(day, seen, ("due",)),
@@ -73,9 +59,9 @@ def arrange(folder: Path | None, day: Any, coming: Any) -> Loaded:
         "bonds": bonds_sheet(day.source.bonds),
         "files": files_sheet(day.source.totals, digits_of(day.source.totals["currency"])),
         "rejects": rejects_sheet(day.source.rejects),
-        "ahead": ahead_sheet(ahead.table, ahead.digits, year),
+        "ahead": ahead_sheet(coming.payments, coming.digits, year, day.source.bonds),
     }
-    return Loaded(folder, day, seen, ahead, sheets)
+    return Loaded(folder, day, seen, coming, sheets)
 
 
 def prepare(loaded: Loaded, progress: Progress) -> None:

@@ -11,13 +11,14 @@ from pathlib import Path
 from typing import Any
 
 from PySide6.QtCore import QByteArray, QSettings, QTimer
-from PySide6.QtGui import QAction, QActionGroup, QCloseEvent, QKeySequence
-from PySide6.QtWidgets import QApplication, QHBoxLayout, QMainWindow, QMenu, QStackedWidget, QVBoxLayout, QWidget
+from PySide6.QtGui import QCloseEvent
+from PySide6.QtWidgets import QApplication, QHBoxLayout, QMainWindow, QStackedWidget, QVBoxLayout, QWidget
 
 from reconciler.problems import KnownError, Problem
 from reconciler.window import figures, jobs, loading
-from reconciler.window.actions import ACTIONS, MENUS, PAGES, page_keys
+from reconciler.window.actions import ACTIONS, PAGES
 from reconciler.window.banner import Banner, Progress
+from reconciler.window.menus import make_actions, make_menu
 from reconciler.window.pages.ahead import AheadPage
 from reconciler.window.pages.bonds import BondsPage
 from reconciler.window.pages.files import FilesPage
@@ -26,9 +27,12 @@ from reconciler.window.pages.payments import PaymentsPage
 from reconciler.window.sidebar import Sidebar
 from reconciler.window.theme import icon, theme
 from reconciler.window.welcome import Welcome
-from reconciler.window.widgets import action_button, tip_of
+from reconciler.window.widgets import action_button
+from reconciler.window.wording import fault_told, sentence
 
 NAME = "Reconciler"
+LAYOUT_CODES = ("unknown-layout", "ambiguous-layout", "ambiguous-dates", "missing-column")
+"""Codes of problems that assigning a file's columns can settle."""
 
 
 def settings() -> QSettings:
@@ -49,9 +53,8 @@ class MainWindow(QMainWindow):
         self.setWindowIcon(icon("reconciler", size=64))
         self.setMinimumSize(960, 600)
         self.resize(1440, 900)
-        self.actions_by_key: dict[str, QAction] = {}
-        self._make_actions()
-        menu = self._make_menu()
+        self.actions_by_key = make_actions(self)
+        menu = make_menu(self, self.actions_by_key)
         entries = [(page.key, page.text, page.group, self.actions_by_key[f"page {page.key}"]) for page in PAGES]
         self.sidebar = Sidebar(entries, menu)
         self.banner, self.progress = Banner(), Progress()
@@ -87,46 +90,6 @@ class MainWindow(QMainWindow):
         self._restore()
 
     # --- making
-
-    def _make_actions(self) -> None:
-        for declared in ACTIONS:
-            action = QAction(declared.text, self)
-            action.setShortcuts([QKeySequence(keys) for keys in declared.keys])
-            action.setStatusTip(declared.help)
-            action.setToolTip(tip_of(action))
-            action.triggered.connect(lambda _on=False, key=declared.key: self.act(key))
-            self.actions_by_key[declared.key] = action
-            self.addAction(action)
-        for number, page in enumerate(PAGES, 1):
-            action = QAction(page.text, self)
-            action.setShortcuts([QKeySequence(keys) for keys in page_keys(number)])
-            action.setStatusTip(page.help)
-            action.setToolTip(tip_of(action))
-            action.triggered.connect(lambda _on=False, key=page.key: self.show_page(key))
-            self.actions_by_key[f"page {page.key}"] = action
-            self.addAction(action)
-        group = QActionGroup(self)
-        for key in ("system", "light", "dark"):
-            self.actions_by_key[key].setCheckable(True)
-            group.addAction(self.actions_by_key[key])
-
-    def _make_menu(self) -> QMenu:
-        whole = QMenu(self)
-        whole.setToolTipsVisible(True)
-        for name in MENUS:
-            part = whole.addMenu(name)
-            part.setToolTipsVisible(True)
-            if name == "Go":
-                part.addActions([self.actions_by_key[f"page {page.key}"] for page in PAGES])
-            for declared in (one for one in ACTIONS if one.menu == name):
-                if declared.divided:
-                    part.addSeparator()
-                part.addAction(self.actions_by_key[declared.key])
-        open_menu = QAction("Menu", self)
-        open_menu.setShortcut(QKeySequence("F10"))
-        open_menu.triggered.connect(lambda: self.sidebar.menu_button.showMenu())
-        self.addAction(open_menu)
-        return whole
 
     def _make_pages(self) -> None:
         acts = self.actions_by_key
@@ -216,32 +179,25 @@ class MainWindow(QMainWindow):
         self.show_page(current.key if isinstance(current, Page) else "breaks")
         jobs.Job(lambda progress: loading.prepare(loaded, progress), "prepare", self).start()
 
+    def _can_assign(self) -> bool:
+        """True when one of the problems is a confirmations file whose columns can be settled by hand."""
+        return any(isinstance(one, Problem) and one.code in LAYOUT_CODES for one in self.problems)
+
     def _say_problems(self) -> None:
         if not self.problems:
             self.banner.hide()
         elif len(self.problems) == 1:
-            self.banner.say(_sentence(self.problems[0]), more=False)
+            self.banner.say(sentence(self.problems[0]), assign=self._can_assign())
         else:
             rest = figures.count(len(self.problems) - 1, "other problem")
-            self.banner.say(f"{_sentence(self.problems[0])}  And {rest}.", more=True)
+            self.banner.say(f"{sentence(self.problems[0])}  And {rest}.", more=True, assign=self._can_assign())
 
     def say_failed(self, what: str, fault: object) -> None:
         """Tells in plain words that something did not work; what is shown stays."""
+        told, rest = fault_told(fault)
         if isinstance(fault, KnownError):
             self.problems = tuple(fault.problems)
-            rest = len(self.problems) - 1
-            told = _sentence(self.problems[0]) if self.problems else str(fault)
-            self.banner.say(f"{what} {told}" + (f" And {figures.count(rest, 'other problem')}." if rest > 0 else ""),
-                            more=rest > 0, bad=True)  # fmt: skip
-        elif isinstance(fault, MemoryError):
-            self.banner.say(f"{what} There was not enough memory; close other programs and try again.", bad=True)
-        elif isinstance(fault, OSError):
-            self.banner.say(f"{what} {fault.strerror or 'The file or folder cannot be used'}"
-                            f"{f': {Path(str(fault.filename)).name}' if fault.filename else ''}. Try again when it is free.",
-                            bad=True)  # fmt: skip
-        else:
-            self.banner.say(f"{what} This is a fault of the program, not of your files; nothing was changed. "
-                            f"Note for the maker: {type(fault).__name__}: {fault}", bad=True)  # fmt: skip
+        self.banner.say(f"{what} {told}", more=rest > 0, bad=True, assign=self._can_assign())
 
     # --- pages
 
@@ -302,10 +258,6 @@ class MainWindow(QMainWindow):
         kept.sync()
         jobs.stop_all()
         super().closeEvent(event)
-
-
-def _sentence(problem: Problem | str) -> str:
-    return problem if isinstance(problem, str) else problem.sentence()
 
 
 def _date(text: str) -> datetime.date | None:

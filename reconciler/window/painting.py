@@ -17,7 +17,7 @@ _RIGHT = Qt.AlignmentFlag.AlignRight | Qt.AlignmentFlag.AlignVCenter
 _LEFT = Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter
 _CENTRE = Qt.AlignmentFlag.AlignCenter
 _ELIDE = Qt.TextElideMode.ElideRight
-PADDING = 10
+PADDING = 8
 
 
 def paint_cell(

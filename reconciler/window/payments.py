@@ -1,7 +1,7 @@
 """One payment, four accounts side by side: silent where they agree, plain where they differ.
 
-The columns of the lists of payments (breaks, due, agreed), declared as data: what a page of rows shows, how rows rank, what is
-copied and exported. Every word and figure is looked up in the day's tables; a difference is never worked out here.
+The columns of the lists of payments (breaks, due, agreed), declared as data: what a page of rows shows (payment_cells.py), how
+rows rank, what is copied and exported; and the lists themselves, with what can be searched and filtered.
 """
 
 from __future__ import annotations
@@ -11,191 +11,19 @@ from typing import Any
 import numpy as np
 
 from reconciler.records import MISSING, PARTIES, STATES, Words, gather
-from reconciler.window import figures
-from reconciler.window.sheet import Cell, Column, Facet, Fact, Rows, Sheet, facet_of, texts
+from reconciler.window.payment_cells import (
+    Payments,
+    day_cells,
+    overdue_cells,
+    party_cells,
+    payment_cells,
+    stake_cells,
+    terms_cells,
+    text_cells,
+    why_cells,
+)
 from reconciler.window.search import Index
-
-MISSING_WORDS = {
-    # kind of break: what the party's cell says
-    "no confirmation": "silent",
-    "no ticket": "no ticket",
-    "no cash": "no cash",
-}
-AMOUNT_KINDS = ("settlement amount", "payment amount", "accrued", "fees", "face")
-DATE_KINDS = ("settlement date", "payment date", "trade date")
-CERTAINTY_TONES = {"proved": "proved", "likely": "day", "open": "soft"}
-CERTAINTY_WORDS = {"proved": "proved to the {unit}", "likely": "likely", "open": "open"}
-BROKEN = STATES.index("break")
-
-
-class Payments:
-    """Some of a day's items, in the list's own order: `rows` are item row numbers."""
-
-    def __init__(self, day: Any, overview: Any, rows: np.ndarray) -> None:
-        self.day, self.overview = day, overview
-        self.items, self.breaks = day.items, day.breaks
-        self.rows = np.asarray(rows, np.int64)
-        self.year = day.date.astype(object).year if isinstance(day.date, np.datetime64) else day.date.year
-        self.first = overview.first_break[self.rows]
-        used = np.unique(overview.digits[self.rows]) if len(rows) else np.array([2])
-        # decimal points align on the finest currency in the list
-        self.finest = int(used.max())
-
-    def item(self, name: str, at: Rows) -> Any:
-        """A column of the items at some rows of the list: `Words` or numpy."""
-        column = self.items[name]
-        return column.take(self.rows[at]) if isinstance(column, Words) else column[self.rows[at]]
-
-    def of_break(self, name: str, at: Rows) -> Any:
-        """A column of the rows' first breaks; blank where a row has none."""
-        column, rows = self.breaks[name], self.first[at]
-        return column.take(rows) if isinstance(column, Words) else gather(column, rows)
-
-    def whole(self, name: str) -> Any:
-        """A column of the items for every row of the list."""
-        return self.item(name, np.arange(len(self.rows)))
-
-
-def title_of(kind: str, side: int, face_text: str, description: str, narrative: str = "") -> str:
-    """A payment in one line: "Buy 5,000,000 Marlow Gas 4.625 2031"."""
-    if kind == "trade":
-        return " ".join(part for part in ({1: "Buy", -1: "Sell"}.get(side, "Trade"), face_text, description) if part)
-    if kind == "coupon":
-        return f"Coupon on {face_text} {description}"
-    if kind == "redemption":
-        return f"Redemption of {face_text} {description}"
-    return narrative or "Bank entry"
-
-
-def _payment(data: Payments, at: Rows) -> list[Cell]:
-    kinds, names = texts(data.item("kind", at)), texts(data.overview.description.take(data.rows[at]))
-    sides, faces = data.item("side", at).tolist(), data.item("face_minor", at).tolist()
-    digits = data.overview.digits[data.rows[at]].tolist()
-    tickets, brokers = texts(data.item("ticket", at)), texts(data.item("broker", at))
-    accounts, entries = texts(data.item("account", at)), texts(data.item("bank_entries", at))
-    references = texts(data.item("broker_reference", at))
-    days = np.where(np.isnat(data.item("terms_date", at)), data.item("desk_date", at), data.item("terms_date", at))
-    bank_days = data.item("bank_date", at)
-    cells = []
-    for i, kind in enumerate(kinds):
-        face = figures.face(faces[i], digits[i])
-        title = title_of(kind, sides[i], face, names[i], f"Bank entry {entries[i]}".strip())
-        when = figures.date(days[i], data.year)
-        if kind == "trade":
-            who = brokers[i] or "no broker told"
-            small = (tickets[i] or references[i], f"settles {when}" if when else "", who)
-        elif kind == "bank":
-            small = (f"booked for {figures.date(bank_days[i], data.year)}", names[i], accounts[i])
-        else:
-            small = (f"due {when}" if when else "", accounts[i])
-        cells.append(Cell(title, "  ·  ".join(part for part in small if part), strong=True))
-    return cells
-
-
-def _terms(data: Payments, at: Rows) -> list[Cell]:
-    amounts, digits = data.item("terms_minor", at).tolist(), data.overview.digits[data.rows[at]].tolist()
-    currencies = texts(data.item("currency", at))
-    broken = data.overview.party_breaks[0][data.rows[at]]
-    words = texts(data.breaks["break"].take(broken))
-    cells = []
-    for i, minor in enumerate(amounts):
-        if words[i]:
-            cells.append(Cell(words[i].removeprefix("unsound ").capitalize() if words[i] == "unsound terms" else
-                              words[i], "terms not usable", "?", "silent"))
-            continue
-        shift = data.finest - digits[i]
-        cells.append(Cell(figures.amount(minor, digits[i], signed=True), currencies[i], shift=shift))
-    return cells
-
-
-def _party_cells(party: int, column: str) -> Any:
-    def show(data: Payments, at: Rows) -> list[Cell]:
-        rows = data.rows[at]
-        found_rows = data.overview.party_breaks[party][rows]
-        told = (data.items[column][rows] != MISSING).tolist()
-        states = data.overview.state[rows].tolist()
-        digits = data.overview.digits[rows].tolist()
-        breaks = data.breaks
-        kinds = texts(breaks["break"].take(found_rows))
-        finds, differences = texts(breaks["found"].take(found_rows)), texts(breaks["difference"].take(found_rows))
-        cells = []
-        for i, kind in enumerate(kinds):
-            if kind:
-                cells.append(break_cell(kind, finds[i], differences[i], data.year, data.finest - digits[i]))
-            elif told[i]:
-                cells.append(Cell("=", tone="quiet"))
-            elif party == PARTIES.index("Bank") and STATES[states[i]] == "due":
-                cells.append(Cell("due", tone="quiet"))
-            else:
-                cells.append(Cell())
-        return cells
-
-    return show
-
-
-def break_cell(kind: str, found: str, difference: str, year: int, shift: int = 0) -> Cell:
-    """How a party's cell tells its most urgent break: the figure found, and by how much it is off."""
-    if kind in MISSING_WORDS:
-        return Cell(MISSING_WORDS[kind], "", "∅", "silent")
-    if kind in DATE_KINDS:
-        day = figures.date(np.datetime64(found), year) if found else ""
-        return Cell(day, days_apart(difference, kind), "←" if difference.startswith("-") else "→", "day")
-    if kind == "told twice":
-        return Cell("told twice", figures.grouped(found), "2×", "differ")
-    if kind == "unexplained cash":
-        return Cell(figures.grouped(found, signed=True), "unexplained", "?", "silent", shift)
-    if kind in ("unknown bond", "unsound terms"):
-        return Cell(kind, "", "?", "silent")
-    by = figures.grouped(difference, signed=True)
-    if kind in ("settlement amount", "payment amount"):
-        return Cell(figures.grouped(found, signed=True), by, "≠", "differ", shift)
-    return Cell(figures.grouped(found), f"{kind} {by}".strip(), "≠", "differ")
-
-
-def days_apart(difference: str, kind: str = "") -> str:
-    """ "-1" as "1 day early", for trade dates "trade date, 1 day early"."""
-    try:
-        days = int(float(difference))
-    except ValueError:
-        return kind
-    words = f"{figures.count(abs(days), 'day')} {'early' if days < 0 else 'late'}"
-    return f"{kind}, {words}" if kind == "trade date" else words
-
-
-def _why(data: Payments, at: Rows) -> list[Cell]:
-    causes, sentences = texts(data.of_break("cause", at)), texts(data.of_break("explanation", at))
-    kinds, parties = texts(data.of_break("break", at)), texts(data.of_break("party", at))
-    certainties = texts(data.of_break("certainty", at))
-    more = (data.overview.break_count[data.rows[at]] - 1).tolist()
-    states = data.overview.state[data.rows[at]].tolist()
-    digits = data.overview.digits[data.rows[at]].tolist()
-    cells = []
-    for i, kind in enumerate(kinds):
-        if not kind:
-            cells.append(Cell(STATES[states[i]], tone="soft"))
-            continue
-        unit = "cent" if digits[i] == 2 else "last unit"
-        small = CERTAINTY_WORDS.get(certainties[i], "open").format(unit=unit)
-        if more[i] > 0:
-            small += f"  ·  {figures.count(more[i], 'more break')}"
-        text = causes[i] or sentences[i] or f"{kind}, {parties[i]}"
-        text = text[:1].upper() + text[1:]
-        cells.append(Cell(text, small, {"proved": "✓", "likely": "≈"}.get(certainties[i], ""),
-                          CERTAINTY_TONES.get(certainties[i], "soft")))
-    return cells
-
-
-def _overdue(data: Payments, at: Rows) -> list[Cell]:
-    days = data.of_break("overdue_days", at).tolist()
-    return [Cell(f"{day} d" if day != MISSING and day > 0 else "", tone="soft") for day in days]
-
-
-def _stake(data: Payments, at: Rows) -> list[Cell]:
-    stakes = data.of_break("stake_minor", at).tolist()
-    digits = data.overview.digits[data.rows[at]].tolist()
-    currencies = texts(data.item("currency", at))
-    return [Cell(figures.amount(stake, digits[i]), currencies[i] if stake != MISSING else "", shift=data.finest - digits[i],
-                 strong=True) for i, stake in enumerate(stakes)]  # fmt: skip
+from reconciler.window.sheet import Column, Facet, Fact, Sheet, facet_of
 
 
 def _scaled(data: Payments, minor: np.ndarray) -> np.ndarray:
@@ -235,40 +63,30 @@ def _break_rank(name: str) -> Any:
 
 
 COLUMNS: tuple[Column, ...] = (
-    Column("payment", "Payment", "What is paid; below it ticket, date and counterparty", _payment, _payment_rank, 310,
+    Column("payment", "Payment", "What is paid; below it ticket, date and counterparty", payment_cells, _payment_rank, 310,
            stretch=3),
-    Column("terms", "Terms", "What the bond's own terms say must be paid; a payment by us is negative", _terms,
+    Column("terms", "Terms", "What the bond's own terms say must be paid; a payment by us is negative", terms_cells,
            lambda d: _scaled(d, d.whole("terms_minor")), 90, right=True),
     Column("broker", "Broker", "What the broker confirmed: = where it agrees with the terms",
-           _party_cells(1, "broker_minor"), _party_rank(1, "broker_minor"), 72, right=True),
-    Column("desk", "Desk", "What our own ticket says: = where it agrees with the terms", _party_cells(2, "desk_minor"),
+           party_cells(1, "broker_minor"), _party_rank(1, "broker_minor"), 72, right=True),
+    Column("desk", "Desk", "What our own ticket says: = where it agrees with the terms", party_cells(2, "desk_minor"),
            _party_rank(2, "desk_minor"), 72, right=True),
     Column("bank", "Bank", "What was booked to our cash account: = where it agrees with the terms",
-           _party_cells(3, "bank_minor"), _party_rank(3, "bank_minor"), 72, right=True),
-    Column("why", "Why", "The cause found for the most urgent break, and how certain it is", _why, _break_rank("cause"), 230,
+           party_cells(3, "bank_minor"), _party_rank(3, "bank_minor"), 72, right=True),
+    Column("why", "Why", "The cause found for the most urgent break, and how certain it is", why_cells, _break_rank("cause"), 230,
            stretch=2),
-    Column("overdue", "Overdue", "Business days since the payment was due", _overdue, _break_rank("overdue_days"), 60,
+    Column("overdue", "Overdue", "Business days since the payment was due", overdue_cells, _break_rank("overdue_days"), 60,
            right=True, descending_first=True),
-    Column("stake", "At stake", "What can be lost on this payment while the break is open", _stake,
+    Column("stake", "At stake", "What can be lost on this payment while the break is open", stake_cells,
            lambda d: _scaled(d, gather(d.breaks["stake_minor"], d.first)), 80, right=True, descending_first=True),
 )  # fmt: skip
 
-
-
-def _plain(name: str, tone: str = "soft") -> Any:
-    return lambda data, at: [Cell(text, tone=tone) for text in texts(data.item(name, at))]
-
-
-def _when(data: Payments, at: Rows) -> list[Cell]:
-    return [Cell(figures.date(day, data.year)) for day in data.item("terms_date", at)]
-
-
 QUIET_COLUMNS: tuple[Column, ...] = (
     *COLUMNS[:5],
-    Column("day", "Day", "The day the terms say it is paid", _when, lambda d: _day_rank(d.whole("terms_date")), 90, stretch=1),
-    Column("account", "Account", "The cash account it is paid to or from", _plain("account"),
+    Column("day", "Day", "The day the terms say it is paid", day_cells, lambda d: _day_rank(d.whole("terms_date")), 90, stretch=1),
+    Column("account", "Account", "The cash account it is paid to or from", text_cells("account"),
            lambda d: d.whole("account").rank(), 150, stretch=2),
-    Column("state", "State", "Agrees, within tolerance or due", _plain("state"), lambda d: d.whole("state").rank(), 120,
+    Column("state", "State", "Agrees, within tolerance or due", text_cells("state"), lambda d: d.whole("state").rank(), 120,
            stretch=1),
 )  # fmt: skip
 """Of the lists without breaks."""
@@ -325,7 +143,7 @@ def _facets(data: Payments, broken: bool) -> list[Facet]:
     if broken:
         facets = [
             Facet("party", "Party", PARTIES, bits=data.overview.party_bits[data.rows]),
-            Facet("kind", "Kind of break", data.overview.kinds, bits=data.overview.kind_bits[data.rows]),
+            Facet("kind", "Kind", data.overview.kinds, bits=data.overview.kind_bits[data.rows]),
         ]
     else:
         facets = [facet_of("kind", "Kind", data.whole("kind"))]

@@ -55,7 +55,7 @@ class PageButton(QAbstractButton):
             painter.drawRoundedRect(self.rect().adjusted(1, 1, -2, -2), 5, 5)
         room = self.rect().adjusted(11, 0, -11, 0)
         painter.setFont(look.font("body", SEMIBOLD if on else MEDIUM))
-        painter.setPen(look.colour("accent" if on else "ink"))
+        painter.setPen(look.colour("accent" if on else "ink" if self.isEnabled() else "faint"))
         painter.drawText(room, Qt.AlignmentFlag.AlignVCenter | Qt.AlignmentFlag.AlignLeft, self.text())
         painter.setFont(look.font("body"))
         painter.setPen(look.colour("accent" if on else "soft"))
@@ -73,6 +73,7 @@ class Sidebar(QWidget):
         self.setAttribute(Qt.WidgetAttribute.WA_StyledBackground)
         self.setFixedWidth(WIDTH)
         self.weekday, self.date = label("", "small"), label("Reconciler", "heading")
+        self.weekday.hide()
         self.menu_button = QToolButton()
         self.menu_button.setProperty("look", "bare")
         self.menu_button.setIcon(icon("menu"))
@@ -124,5 +125,6 @@ class Sidebar(QWidget):
     def show_day(self, date: object, foot: str) -> None:
         """The morning's date, and a few words about its files."""
         self.weekday.setText(figures.weekday(date))
+        self.weekday.show()
         self.date.setText(figures.long_date(date))
         self.foot.setText(foot)

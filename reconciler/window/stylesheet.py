@@ -52,7 +52,7 @@ QCheckBox { background: transparent; spacing: 8px; }
 QCheckBox:focus { color: @accent; }
 
 QMenu { background: @surface; border: 1px solid @outline; border-radius: @radius; padding: 6px; }
-QMenu::item { padding: 6px 28px 6px 12px; border-radius: 4px; }
+QMenu::item { padding: 6px 36px 6px 12px; border-radius: 4px; }
 QMenu::item:selected { background: @wash; color: @ink; }
 QMenu::item:disabled { color: @faint; }
 QMenu::separator { height: 1px; background: @hairline; margin: 6px 8px; }
@@ -86,10 +86,10 @@ QScrollBar::handle:hover { background: @soft; }
 QScrollBar::add-line, QScrollBar::sub-line { width: 0; height: 0; }
 QScrollBar::add-page, QScrollBar::sub-page { background: transparent; }
 
-QFrame#banner { background: @day_wash; border: 1px solid @day; border-radius: 8px; }
+QFrame#banner { background: @day_wash; border-radius: 8px; }
 QFrame#banner QLabel { color: @ink; }
-QFrame#banner[look="differ"] { background: @differ_wash; border-color: @differ; }
-QFrame#banner[look="proved"] { background: @proved_wash; border-color: @proved; }
+QFrame#banner[look="differ"] { background: @differ_wash; }
+QFrame#banner[look="proved"] { background: @proved_wash; }
 QFrame#notice { background: @proved_wash; border-radius: 8px; }
 QFrame#notice QLabel#told { color: @proved; font-weight: 600; }
 QFrame#notice[look="differ"] { background: @differ_wash; }

@@ -17,11 +17,10 @@ from PySide6.QtWidgets import QAbstractItemView, QHeaderView, QStyledItemDelegat
 from reconciler.window import tokens
 from reconciler.window.copying import as_text
 from reconciler.window.model import SheetModel
-from reconciler.window.painting import paint_cell
+from reconciler.window.painting import PADDING, paint_cell
 from reconciler.window.sheet import Cell, Sheet
 from reconciler.window.theme import SEMIBOLD, theme
 
-_PADDING = 10
 
 
 class CellDelegate(QStyledItemDelegate):
@@ -50,7 +49,7 @@ def cell_width(cell: Cell) -> int:
     lower = QFontMetrics(theme().font("small")).horizontalAdvance(cell.small)
     glyph = 20 if cell.glyph else 0
     wide = max(upper, lower + glyph) if cell.small else upper + glyph
-    return wide + 2 * _PADDING + 2 + cell.shift * 10
+    return wide + 2 * PADDING + 2 + cell.shift * 10
 
 
 class Head(QHeaderView):
@@ -75,7 +74,7 @@ class Head(QHeaderView):
         painter.setFont(look.font("small", SEMIBOLD))
         painter.setPen(look.colour("accent" if sorting else "soft"))
         text = column.title + ((" ↓" if sheet.descending else " ↑") if sorting else "")
-        room = rect.adjusted(_PADDING + (4 if number == 0 else 0), 0, -_PADDING, -1)
+        room = rect.adjusted(PADDING + (4 if number == 0 else 0), 0, -PADDING, -1)
         side = Qt.AlignmentFlag.AlignRight if column.right else Qt.AlignmentFlag.AlignLeft
         metrics = painter.fontMetrics()
         painter.drawText(room, side | Qt.AlignmentFlag.AlignVCenter,
@@ -208,7 +207,7 @@ class SheetView(QTableView):
         head = QFontMetrics(theme().font("small", SEMIBOLD))
         widths = []
         for column in sheet.columns:
-            wide = max(column.width, head.horizontalAdvance(column.title) + 2 * _PADDING + 4)
+            wide = max(column.width, head.horizontalAdvance(column.title) + 2 * PADDING + 4)
             if column.right or column.fit:
                 wide = max([wide, *(cell_width(cell) for cell in column.show(sheet.data, rows))])
             widths.append(wide)

@@ -18,8 +18,7 @@ class Welcome(QWidget):
         self._picture.setPixmap(icon("reconciler", size=64).pixmap(64, 64))
         self._title = label("", "title")
         self._text = label("", "soft", wrap=True)
-        self._text.setMaximumWidth(520)
-        self._text.setMinimumWidth(460)
+        self._text.setFixedWidth(520)
         self._buttons = QWidget()
         self._buttons.setLayout(row(1, *buttons, 1, spacing=12))
         column = QVBoxLayout(self)
@@ -27,7 +26,7 @@ class Welcome(QWidget):
         column.addStretch(3)
         for piece in (self._picture, self._title, self._text):
             piece.setAlignment(Qt.AlignmentFlag.AlignCenter)
-            column.addWidget(piece, 0, Qt.AlignmentFlag.AlignHCenter)
+            column.addLayout(row(1, piece, 1))
         column.addSpacing(8)
         column.addWidget(self._buttons)
         column.addStretch(4)

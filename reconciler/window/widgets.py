@@ -65,6 +65,13 @@ def card(*contents: QWidget, margin: int = 0) -> QFrame:
     return frame
 
 
+def discard(widget: QWidget) -> None:
+    """Takes a widget off the screen at once and deletes it when Qt comes to it."""
+    widget.hide()
+    widget.setParent(None)
+    widget.deleteLater()
+
+
 def rule() -> QFrame:
     """A hairline."""
     line = QFrame()
@@ -166,13 +173,12 @@ class Empty(QWidget):
         self.title, self.text = label(title, "heading"), label(text, "soft", wrap=True)
         for piece in (self.title, self.text):
             piece.setAlignment(Qt.AlignmentFlag.AlignCenter)
-        self.text.setMaximumWidth(560)
-        self.text.setMinimumWidth(420)
+        self.text.setFixedWidth(460)
         column = QVBoxLayout(self)
         column.setSpacing(Spacing["small"])
         column.addStretch(2)
         column.addWidget(self.title)
-        column.addWidget(self.text, 0, Qt.AlignmentFlag.AlignHCenter)
+        column.addLayout(row(1, self.text, 1))
         if buttons:
             column.addSpacing(Spacing["medium"])
             column.addLayout(row(1, *buttons, 1))

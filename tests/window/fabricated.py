@@ -207,25 +207,23 @@ def day(agreeing: int = 40, broken: bool = True, problems: tuple[Problem, ...] =
 
 def ahead() -> Any:
     """What lies ahead of the small morning."""
-    schema = {"date": "date", "what": "text", "kind": "text", "account": "text", "bond": "text", "currency": "text",
-              "amount_minor": "int64"}  # fmt: skip
+    from reconciler.procedures.ahead import AHEAD, Ahead, Bar
+
     rows = [
-        ("2026-04-01", "Buy 600,000 Pellerin Water 3.20 2029", "trade", "EUR", -58260000),
-        ("2026-04-01", "Sell 250,000 Marlow Gas 4.625 2031", "trade", "USD", 25349640),
-        ("2026-04-02", "Coupon on 3,000,000 Isle of Carrow 1.50 2033", "coupon", "GBP", 2250000),
-        ("2026-04-07", "Coupon on 9,000,000 Dunmere 5.25 2028", "coupon", "GBP", 23625000),
-        ("2026-04-08", "Coupon on 4,800,000 Sakuraya Rail 0.60 2030", "coupon", "JPY", 1440000),
-        ("2026-04-09", "Coupon on 2,000,000 Osk Republic 2.875 2044", "coupon", "USD", 2875000),
-        ("2026-04-14", "Redemption of 1,000,000 Tennick Bill", "redemption", "USD", 100000000),
+        ("2026-04-01", 1, "trade", "EUR", -58260000, 1, 60000000), ("2026-04-01", 0, "trade", "USD", 25349640, -1, 25000000),
+        ("2026-04-02", 4, "coupon", "GBP", 2250000, 0, 300000000), ("2026-04-07", 6, "coupon", "GBP", 23625000, 0, 900000000),
+        ("2026-04-08", 7, "coupon", "JPY", 1440000, 0, 480000000), ("2026-04-09", 2, "coupon", "USD", 2875000, 0, 200000000),
+        ("2026-04-14", 5, "redemption", "USD", 100000000, 0, 100000000),
     ]  # fmt: skip
     payments = records.table(
-        schema, date=[r[0] for r in rows], what=[r[1] for r in rows], kind=[r[2] for r in rows],
-        account=["Northquay custody"] * len(rows), bond=[""] * len(rows), currency=[r[3] for r in rows],
-        amount_minor=[r[4] for r in rows],
+        AHEAD, date=[r[0] for r in rows], kind=[r[2] for r in rows], account=["Northquay custody"] * len(rows),
+        bond=[BONDS[r[1]][0] for r in rows], bond_row=[r[1] for r in rows], currency=[r[3] for r in rows],
+        amount_minor=[r[4] for r in rows], side=[r[5] for r in rows], face_minor=[r[6] for r in rows],
+        ticket=["T-20971", "", "", "", "", "", ""],
     )  # fmt: skip
     digits = np.array([0 if r[3] == "JPY" else 2 for r in rows], np.int64)
-    bars = [(np.datetime64(r[0]), r[3], max(r[4], 0), max(-r[4], 0), int(digits[i]), 1) for i, r in enumerate(rows)]
-    return SimpleNamespace(payments=payments, digits=digits, bars=bars, until=np.datetime64("2026-04-14"))
+    bars = tuple(Bar(np.datetime64(r[0]), r[3], max(r[4], 0), max(-r[4], 0), int(digits[i]), 1) for i, r in enumerate(rows))
+    return Ahead(payments, digits, bars, np.datetime64("2026-04-14"))
 
 
 def large_day(rows: int = 1_000_000) -> FabricatedDay:

@@ -96,7 +96,7 @@ def test_a_filter_menu_lists_words_with_counts_and_ticks(qtbot: QtBot, page: Pay
     menu = page.filters._buttons["party"].menu()
     menu.aboutToShow.emit()
     told = [action.text() for action in menu.actions() if action.isCheckable()]
-    assert told[0] == "Bank   6"
+    assert told[0] == "Bank\t6"
     menu.actions()[0].trigger()
     assert page.sheet.chosen == {"party": ("Bank",)}
     assert page.filters._buttons["party"].text() == "Party: Bank  ▾"

@@ -15,7 +15,7 @@ from reconciler.window.detail.accounts import accounts_sheet, breaks_of
 from reconciler.window.detail.coupons import coupons_sheet
 from reconciler.window.detail.working import working_sheet
 from reconciler.window.drawings import Strip
-from reconciler.window.payments import title_of
+from reconciler.window.payment_cells import title_of
 from reconciler.window.sheet import Sheet
 
 

@@ -14,7 +14,7 @@ from PySide6.QtWidgets import QFrame, QHBoxLayout, QScrollArea, QStackedWidget, 
 from reconciler.window.detail import behind
 from reconciler.window.drawings import CouponStrip
 from reconciler.window.table import SheetView
-from reconciler.window.widgets import Empty, Notice, label
+from reconciler.window.widgets import Empty, Notice, discard, label
 
 TABS = ("accounts", "working", "coupons")
 
@@ -112,7 +112,7 @@ class DetailPane(QFrame):
         while self.differs.count():
             old = self.differs.takeAt(0).widget()
             if old is not None:
-                old.deleteLater()
+                discard(old)
         for told in behind.differences(self._day, self._row):
             notice = Notice()
             notice.say(told.title, told.text, told.look)
@@ -152,7 +152,7 @@ class DetailPane(QFrame):
         line = QHBoxLayout(page)
         line.setContentsMargins(8, 6, 20, 4)
         line.setSpacing(24)
-        line.addWidget(self.working, 7)
+        line.addWidget(self.working, 8)
         inner = QWidget()
         inner.setObjectName("scrolled")
         column = QVBoxLayout(inner)

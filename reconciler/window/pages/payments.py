@@ -55,6 +55,7 @@ class PaymentsPage(Page):
         self.show_sheet(sheet)
         if not sheet.length:
             self.detail.show_row(None, None, -1)
+        self.detail.setVisible(bool(sheet.length))
 
     def count(self) -> int | None:
         if self.key == "breaks" and self._loaded is not None:

@@ -6,7 +6,7 @@ import numpy as np
 import pytest
 
 from reconciler.window.loading import Loaded
-from reconciler.window.payments import break_cell, days_apart, title_of
+from reconciler.window.payment_cells import break_cell, days_apart, title_of
 
 
 def _row(loaded: Loaded, place: int) -> dict[str, tuple[str, str, str, str]]:
