@@ -26,7 +26,7 @@ from tests.oracle.deals import Entry, Trade
 MORNINGS = (date(2026, 3, 30), date(2026, 3, 31), date(2026, 4, 1))
 SINCE = (date(2026, 3, 16), date(2026, 3, 17), date(2026, 3, 18))
 BROKERS = ("Tamarisk & Vane", "Orrin & Teale", "Quillon Harrow", "Ellisk Fane")
-SEED = 20260330
+SEED = 2
 LAST = len(MORNINGS) - 1
 
 
@@ -121,7 +121,12 @@ def invent() -> tuple[Story, dict[str, Bond], random.Random]:
         bond.description = f"{name} {words.get(bond.kind) or eighths(bond.rate)} {bond.maturity.year}"
     room = [100, 20, 20]
     while any(room):
-        bond = players["not on file"] if len(story.trades) == 40 else rng.choice(story.bonds)
+        bond = rng.choice(story.bonds)
+        if len(story.trades) % 10 == 4:
+            # enough of what the faults ask for: bills, long zeros, notes in 32nds, gilts about to pay
+            bond = rng.choice([b for b in story.bonds if b.quote != "price" or b.maturity.year > 2045 or b is players["ex dividend"]])
+        if len(story.trades) == 40:
+            bond = players["not on file"]
         trade = deals.deal(scene, bond, len(story.trades) + 1)
         if trade and trade.true["broker"] in BROKERS and trade.true["trade_date"] < MORNINGS[-1]:
             known = morning_after(trade.true["trade_date"])

@@ -97,11 +97,13 @@ def pay(due: Due, number: int, rng: random.Random) -> None:
     truth, word = due.truth, "COUPON" if due.truth.kind == "coupon" else "REDEMPTION"
     assert truth.amount is not None and truth.day is not None
     entry = Entry(f"C{number:06d}", due.account, truth.currency, truth.day, truth.amount, f"{word} {due.bond.description}")
-    manner = rng.choice(("bond", "bond", "reference", "narrative", "two entries", "bond"))
+    manner = rng.choice(("bond", "bond", "reference", "narrative", "two entries", "bond", "lower"))
     if manner in ("bond", "two entries"):
         entry.bond = due.bond.bond
     elif manner == "reference":
         entry.reference = due.bond.bond
+    elif manner == "lower":
+        entry.narrative = f"{word.lower()} {due.bond.bond.lower()}, record holders"
     else:
         entry.narrative = f"{word} {due.bond.bond} FACE {abs(due.face)}"
     due.bank = [entry]

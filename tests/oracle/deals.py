@@ -125,11 +125,11 @@ def face_for(bond: Bond, rng: random.Random) -> int:
 def deal(scene: Scene, bond: Bond, number: int) -> Trade | None:
     """One trade that settles between `since` and a few days after the morning, told alike by everybody; None if it cannot be."""
     rng = scene.rng
-    day = scene.since + timedelta(days=rng.randint(-2, (scene.today - scene.since).days))
+    day = scene.since + timedelta(days=rng.randint(-7, (scene.today - scene.since).days))
     if not bond.calendar.is_open(day):
         return None
     settle = bond.settles(day)
-    if settle < scene.since or not tradeable(bond, settle):
+    if settle < scene.since - timedelta(days=4) or not tradeable(bond, settle):
         return None
     broker, account, side = rng.choice(BROKERS), rng.choice(ACCOUNTS), rng.choice((1, -1))
     price, price_text = price_for(bond, rng)
@@ -153,6 +153,12 @@ def deal(scene: Scene, bond: Bond, number: int) -> Trade | None:
         confirmed["account"] = ""
     if rng.random() < 0.1:
         desk["status"], confirmed["status"] = "", rng.choice(("", "new"))
+    untold = rng.random()
+    if untold < 0.05:
+        # the fee is inside the amount, and only one of the two says how much it is
+        (desk if untold < 0.025 else confirmed)["fees"] = None
+    elif untold < 0.07:
+        desk["settlement"] = desk["accrued"] = None
     truth = Truth("trade", (facts["ticket"],), bond.currency, signed(facts), settle)
     trade = Trade(bond, facts, desk, confirmed, truth, overdue=settle < scene.today)
     if settle < scene.today or (settle == scene.today and rng.random() < 0.5):
@@ -166,7 +172,7 @@ def pay(trade: Trade, rng: random.Random) -> None:
     """The bank's booking of a trade, in one of the manners banks have of naming what they pay."""
     facts, amount = trade.true, trade.cash
     number = facts["ticket"][1:]
-    manner = rng.choice(("ticket", "ticket", "broker", "bond", "narrative", "both", "two entries"))
+    manner = rng.choice(("ticket", "ticket", "broker", "bond", "narrative", "broker in narrative", "worded", "both", "two entries"))
     word = "PURCHASE" if facts["side"] > 0 else "SALE"
     entry = Entry(f"E{number}", facts["account"], facts["currency"], facts["settlement_date"], amount,
                   narrative=f"SECURITIES {word}")  # fmt: skip
@@ -178,6 +184,10 @@ def pay(trade: Trade, rng: random.Random) -> None:
         entry.bond = facts["bond"]
     if manner == "narrative":
         entry.narrative += f" {facts['ticket']} {trade.bond.description}"
+    if manner == "broker in narrative":
+        entry.narrative += f', "{facts["broker"]}", REF {facts["broker_reference"]}'
+    if manner == "worded":
+        entry.reference = f"TRADE {facts['ticket']}"
     trade.bank = [entry]
     if manner == "two entries" and abs(amount) > 1000:
         part = amount * rng.randint(20, 80) // 100

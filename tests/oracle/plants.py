@@ -57,15 +57,17 @@ def _put(trade: Trade, party: str, facts: dict[str, Any]) -> None:
 def _again(trade: Trade, facts: dict[str, Any], **changes: Any) -> dict[str, Any]:
     """Told facts reckoned again, with what the party leaves untold still untold."""
     new = reckon(trade.bond, {**trade.true, **{k: facts[k] for k in ("status", "account", "broker_reference", "desk_reference")}}, **changes)
-    if facts["accrued"] is None:
-        new["accrued"] = None
+    for name in ("accrued", "settlement"):
+        if facts[name] is None:
+            new[name] = None
     return new
 
 
 def amount_slip(party: str) -> TradePlant:
     def plant(trade: Trade, rng: random.Random) -> Must:
         facts = trade.broker if party == "Broker" else trade.desk
-        assert facts
+        if not facts or facts["settlement"] is None:
+            return None
         facts["settlement"] = slip(facts["settlement"], rng)
         return {("settlement amount", party)}
 
@@ -75,7 +77,7 @@ def amount_slip(party: str) -> TradePlant:
 def wrong_day_count(party: str) -> TradePlant:
     def plant(trade: Trade, rng: random.Random) -> Must:
         facts = trade.broker if party == "Broker" else trade.desk
-        if not facts or trade.bond.kind == "zero" or facts["accrued"] is None or trade.true["accrued"] <= 0:
+        if not facts or trade.bond.kind == "zero" or None in (facts["accrued"], facts["settlement"]) or trade.true["accrued"] <= 0:
             return None
         new = _again(trade, facts, day_count=rng.choice(OTHER_COUNTS))
         if abs(new["accrued"] - trade.true["accrued"]) < 5:
@@ -89,7 +91,7 @@ def wrong_day_count(party: str) -> TradePlant:
 def one_day_more(party: str) -> TradePlant:
     def plant(trade: Trade, rng: random.Random) -> Must:
         facts = trade.broker if party == "Broker" else trade.desk
-        if not facts or trade.bond.kind == "zero" or facts["accrued"] is None:
+        if not facts or trade.bond.kind == "zero" or None in (facts["accrued"], facts["settlement"]):
             return None
         new = _again(trade, facts, to=trade.true["settlement_date"] + timedelta(days=rng.choice((1, 2))))
         if abs(new["accrued"] - trade.true["accrued"]) < 5:
@@ -115,7 +117,7 @@ def later_settlement(party: str, amounts_too: bool) -> TradePlant:
     def plant(trade: Trade, rng: random.Random) -> Must:
         facts = trade.broker if party == "Broker" else trade.desk
         assert facts
-        if trade.bond.settlement_days is None and not trade.paid:
+        if (trade.bond.settlement_days is None and not trade.paid) or facts["settlement"] is None:
             return None
         day = trade.bond.calendar.walk(trade.true["settlement_date"], rng.choice((1, 2)))
         if day >= trade.bond.maturity:
@@ -135,7 +137,7 @@ def later_settlement(party: str, amounts_too: bool) -> TradePlant:
 def wrong_price(party: str, carried: bool) -> TradePlant:
     def plant(trade: Trade, rng: random.Random) -> Must:
         facts = _told(trade, party)
-        if not facts or trade.bond.quote == "32nds":
+        if not facts or trade.bond.quote == "32nds" or facts["settlement"] is None:
             return None
         price = trade.true["price"] + Fraction(rng.choice((-9, -5, -1, 1, 5, 9)), 8 if trade.bond.quote == "price" else 100)
         new = _again(trade, facts, price=price, price_text=text(price)) if carried else {**facts, "price": price, "price_text": text(price)}
@@ -162,7 +164,7 @@ def thirty_seconds_as_decimals(trade: Trade, rng: random.Random) -> Must:
 def wrong_face(party: str) -> TradePlant:
     def plant(trade: Trade, rng: random.Random) -> Must:
         facts = _told(trade, party)
-        if not facts:
+        if not facts or facts["settlement"] is None:
             return None
         unit = 1000 * 10 ** DIGITS[trade.bond.currency]
         face = rng.choice((trade.true["face"] * 10, trade.true["face"] + unit, trade.true["face"] * 2))
@@ -175,7 +177,7 @@ def wrong_face(party: str) -> TradePlant:
 def wrong_side(party: str) -> TradePlant:
     def plant(trade: Trade, rng: random.Random) -> Must:
         facts = _told(trade, party)
-        if not facts:
+        if not facts or facts["settlement"] is None:
             return None
         _put(trade, party, _again(trade, facts, side=-trade.true["side"]))
         return {("side", party)}
@@ -186,7 +188,7 @@ def wrong_side(party: str) -> TradePlant:
 def wrong_fees(trade: Trade, rng: random.Random) -> Must:
     """The broker charges other fees than the ticket's; the bank pays what the ticket says."""
     facts = trade.broker
-    if not facts or not trade.true["fees"]:
+    if not facts or not trade.true["fees"] or not trade.desk or trade.desk["fees"] is None or facts["fees"] is None:
         return None
     trade.broker = _again(trade, facts, fees=rng.choice((0, trade.true["fees"] * 2, trade.true["fees"] + 2500)))
     return {("fees", "Broker"), ("settlement amount", "Broker")}
@@ -194,7 +196,7 @@ def wrong_fees(trade: Trade, rng: random.Random) -> Must:
 
 def fee_on_ticket_only(trade: Trade, rng: random.Random) -> Must:
     facts = trade.broker
-    if not facts or not trade.true["fees"]:
+    if not facts or not trade.true["fees"] or not trade.desk or trade.desk["fees"] is None:
         return None
     trade.broker = {**_again(trade, facts, fees=0), "fees": None}
     return {("settlement amount", "Broker")}
@@ -237,6 +239,7 @@ def without_ticket(trade: Trade, rng: random.Random) -> Must:
     for entry in trade.bank:
         # nobody knows our ticket's number now, so the bank goes by the broker's reference
         entry.reference = trade.true["broker_reference"]
+        entry.narrative = "SECURITIES"
     trade.truth.key = (trade.true["broker"], trade.true["broker_reference"])
     return {("no ticket", "Desk")}
 
@@ -278,7 +281,7 @@ def one_unit_off(party: str) -> TradePlant:
     """No break: one smallest unit is within tolerance."""
     def plant(trade: Trade, rng: random.Random) -> Must:
         facts = trade.broker if party == "Broker" else trade.desk
-        if not facts or trade.truth.state == "due" or not trade.paid:
+        if not facts or trade.truth.state == "due" or not trade.paid or facts["settlement"] is None:
             return None
         facts["settlement"] += rng.choice((-1, 1))
         trade.truth.state = "within tolerance"

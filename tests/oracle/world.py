@@ -41,6 +41,8 @@ SPOILT_BONDS: dict[str, dict[str, str]] = {
     "no coupon rate": {"coupon_rate": ""},
     "no maturity": {"maturity": ""},
     "five coupons a year": {"frequency": "5"},
+    "unknown calendar": {"calendar": "NOWHERE"},
+    "floater without a fixing": {"kind": "floating", "coupon_rate": ""},
 }
 
 
@@ -79,7 +81,7 @@ class World:
             if manner.layout:
                 (folder / "layouts" / f"{manner.stem}.toml").write_text(manner.layout.lstrip(), encoding="utf-8")
             for part in range(manner.parts):
-                mine = [f for f in told if int(f["ticket"].strip("TX")) % manner.parts == part]
+                mine = [f for f in told if int(f["ticket"].strip("TXC")) % manner.parts == part]
                 if mine:
                     name = f"confirmations/{manner.stem}_{self.today:%Y%m%d}{'_' + str(part + 1) if part else ''}.csv"
                     written[name] = confirmation_file(folder / name, shuffled(mine, rng), manner)
@@ -145,6 +147,8 @@ def build(seed: int, trades: int = 300, today: date = date(2026, 3, 31), planted
         if due.paid:
             bank.pay(due, number, rng)
     _plant_trades(world, rng, planted)
+    _net_trades(world.trades, rng)
+    _twins(world, rng)
     _plant_dues(world, rng, planted)
     _gather(world)
     if planted:
@@ -188,20 +192,68 @@ def _plant_trades(world: World, rng: random.Random, share: float) -> None:
 
 
 def _harmless(trade: Trade, rng: random.Random) -> None:
-    """Corrections that leave nothing wrong: an amended confirmation or ticket, each with the superseded row still in the file."""
-    draw = rng.random()
-    if draw < 0.03 and trade.broker:
-        trade.more_confirmations.append({**trade.broker, "settlement": trade.broker["settlement"] + 12345, "status": "new"})
-        trade.broker["status"] = "amended"
-    elif draw < 0.06 and trade.desk:
-        trade.more_tickets.append({**trade.desk, "price": trade.desk["price"] + 1, "price_text": text(trade.desk["price"] + 1), "status": "new"})
+    """Corrections that leave nothing wrong: amended rows, a cancelled trade, a trade cancelled and booked or confirmed anew."""
+    draw, told = rng.random(), trade.broker
+    if not told or not trade.desk:
+        return
+    if draw < 0.03:
+        trade.more_confirmations.append({**told, "settlement": told["settlement"] + 12345, "status": "new"})
+        told["status"] = "amended"
+    elif draw < 0.06:
+        price = trade.desk["price"] + 1
+        trade.more_tickets.append({**trade.desk, "price": price, "price_text": text(price), "status": "new"})
         trade.desk["status"] = "amended"
-    elif draw < 0.08 and not trade.paid and trade.desk:
+    elif draw < 0.08 and not trade.paid:
         trade.desk["status"], trade.truth.kind = "cancelled", "none"
-        if rng.random() < 0.5 and trade.broker:
-            trade.more_confirmations.append({**trade.broker, "status": "cancelled"})
+        if rng.random() < 0.5:
+            trade.more_confirmations.append({**told, "status": "cancelled"})
         else:
             trade.broker = None
+    elif draw < 0.10:
+        # the broker cancels one confirmation and sends another under a new reference
+        old = {**told, "broker_reference": told["broker_reference"] + "0"}
+        trade.more_confirmations += [{**old, "status": "new"}, {**old, "status": "cancelled"}]
+    elif draw < 0.12:
+        # the desk cancels one ticket and books the trade anew
+        trade.more_tickets.append({**trade.desk, "ticket": trade.desk["ticket"] + "C", "status": "cancelled"})
+
+
+def _net_trades(trades: list[Trade], rng: random.Random) -> None:
+    """Two settlements of one account, currency and day in one entry that names both tickets, as reference or in the narrative."""
+    waiting: dict[tuple[Any, ...], Trade] = {}
+    for trade in trades:
+        if trade.truth.plant or len(trade.bank) != 1 or trade.truth.kind != "trade" or rng.random() > 0.1:
+            continue
+        key = (trade.true["account"], trade.true["currency"], trade.true["settlement_date"])
+        other = waiting.pop(key, None)
+        if other is None:
+            waiting[key] = trade
+            continue
+        names = [other.true["ticket"], trade.true["ticket"]]
+        one = other.bank[0]
+        joined = replace(one, amount=one.amount + trade.bank[0].amount, bond="", narrative="NET SETTLEMENT", reference=rng.choice((
+            "/", ";", " ")).join(names))  # fmt: skip
+        if rng.random() < 0.4:
+            joined.reference, joined.narrative = "", f"NET OF {names[0]} AND {names[1]}"
+        other.bank, trade.bank = [joined], [joined]
+
+
+def _twins(world: World, rng: random.Random) -> None:
+    """Trades dealt twice in earnest: every fact but the references is the same, and both are confirmed and paid."""
+    plain = [t for t in world.trades if not t.truth.plant and t.truth.kind == "trade" and t.desk and t.broker and not t.more_tickets
+             and not t.more_confirmations and _safe(world)(t) and len(t.bank) <= 1]  # fmt: skip
+    for trade in rng.sample(plain, len(plain) // 40):
+        number = f"T{len(world.trades) + 1:06d}"
+        own = {"ticket": number, "broker_reference": f"{trade.true['broker_reference']}7", "desk_reference": number}
+        truth = replace(trade.truth, key=(number,), must=set(), entries=set())
+        assert trade.desk and trade.broker
+        twin = Trade(trade.bond, {**trade.true, **own}, {**trade.desk, **own}, {**trade.broker, **own}, truth, trade.paid, trade.overdue)
+        trade.desk["broker_reference"], trade.broker["desk_reference"] = trade.true["broker_reference"], ""
+        twin.broker["desk_reference"] = ""  # type: ignore[index]
+        for entry in trade.bank:
+            entry.reference, entry.narrative, entry.bond = trade.true["ticket"], "SECURITIES", ""
+            twin.bank = [replace(entry, entry=f"E{number[1:]}", reference=number)]
+        world.trades.append(twin)
 
 
 def _within(world: World, entries: list[Entry]) -> None:
@@ -261,7 +313,8 @@ def _gather(world: World) -> None:
         world.tickets += tickets
         world.confirmations += ([trade.broker] if trade.broker else []) + trade.more_confirmations
         trade.truth.entries = {entry.entry for entry in trade.bank}
-        world.entries += trade.bank
+        world.entries += [entry for entry in trade.bank if entry.entry not in seen]
+        seen |= trade.truth.entries
         if trade.truth.kind != "none":
             world.truths.append(trade.truth)
     for due in world.dues:
@@ -338,7 +391,7 @@ def _loose_entries(world: World, rng: random.Random) -> None:
 
 
 def _paid_once(world: World, entry: Entry) -> bool:
-    return sum(entry.entry == other.entry for due in world.dues for other in due.bank) <= 1
+    return sum(entry.entry == other.entry for one in (*world.dues, *world.trades) for other in one.bank) <= 1
 
 
 def _key_twice(world: World, trade: Trade) -> None:
