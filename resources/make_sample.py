@@ -26,7 +26,7 @@ from tests.oracle.deals import Entry, Trade
 MORNINGS = (date(2026, 3, 30), date(2026, 3, 31), date(2026, 4, 1))
 SINCE = (date(2026, 3, 16), date(2026, 3, 17), date(2026, 3, 18))
 BROKERS = ("Tamarisk & Vane", "Orrin & Teale", "Quillon Harrow", "Ellisk Fane")
-SEED = 2
+SEED = 20260330
 LAST = len(MORNINGS) - 1
 
 
