@@ -11,7 +11,7 @@ from typing import TYPE_CHECKING
 from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QWidget
 
-from reconciler.window import loading
+from reconciler.window import loading, recent
 from reconciler.window.pages.payments import PaymentsPage
 from reconciler.window.theme import theme
 
@@ -21,8 +21,10 @@ if TYPE_CHECKING:
 
 def _open(window: MainWindow) -> None:
     from reconciler.window.dialogs.open_morning import OpenMorning
+    from reconciler.window.main import settings
 
-    dialog = OpenMorning(window, window.loaded.folder if window.loaded else None)
+    before = [(path, day) for path, day in recent.mornings(settings()) if path.is_dir()]
+    dialog = OpenMorning(window, window.loaded.folder if window.loaded else None, before)
     if dialog.exec() and dialog.folder is not None:
         window.load(dialog.folder, dialog.date)
 

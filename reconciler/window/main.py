@@ -11,11 +11,11 @@ from pathlib import Path
 from typing import Any
 
 from PySide6.QtCore import QByteArray, QSettings, QTimer
-from PySide6.QtGui import QCloseEvent
+from PySide6.QtGui import QCloseEvent, QDragEnterEvent, QDropEvent
 from PySide6.QtWidgets import QApplication, QHBoxLayout, QMainWindow, QStackedWidget, QVBoxLayout, QWidget
 
 from reconciler.problems import KnownError, Problem
-from reconciler.window import figures, jobs, loading
+from reconciler.window import figures, jobs, loading, recent
 from reconciler.window.actions import ACTIONS, PAGES
 from reconciler.window.banner import Banner, Progress
 from reconciler.window.menus import make_actions, make_menu
@@ -52,6 +52,7 @@ class MainWindow(QMainWindow):
         self.setWindowTitle(NAME)
         self.setWindowIcon(icon("reconciler", size=64))
         self.setMinimumSize(960, 600)
+        self.setAcceptDrops(True)
         self.resize(1440, 900)
         self.actions_by_key = make_actions(self)
         menu = make_menu(self, self.actions_by_key)
@@ -103,11 +104,8 @@ class MainWindow(QMainWindow):
 
     def open_at_start(self, folder: Path | None = None, date: datetime.date | None = None) -> None:
         """Loads the folder given, else the last morning, else the latest sample, else invites."""
-        kept = settings()
         if folder is None:
-            last = str(kept.value("last/folder", ""))
-            if last and Path(last).is_dir():
-                folder, date = Path(last), _date(str(kept.value("last/date", "")))
+            folder, date = next(((path, day) for path, day in recent.mornings(settings()) if path.is_dir()), (None, None))
         if folder is None:
             samples = loading.sample_mornings()
             folder = samples[-1] if samples else None
@@ -170,9 +168,7 @@ class MainWindow(QMainWindow):
         self.sidebar.show_day(day.date, "\n".join(part for part in foot if part))
         self.setWindowTitle(f"{figures.long_date(day.date)} – {NAME}")
         if loaded.folder is not None:
-            kept = settings()
-            kept.setValue("last/folder", str(loaded.folder))
-            kept.setValue("last/date", figures.iso(day.date))
+            recent.remember(settings(), loaded.folder, figures.iso(day.date))
         self._say_problems()
         self._enable()
         current = self.stack.currentWidget()
@@ -198,6 +194,16 @@ class MainWindow(QMainWindow):
         if isinstance(fault, KnownError):
             self.problems = tuple(fault.problems)
         self.banner.say(f"{what} {told}", more=rest > 0, bad=True, assign=self._can_assign())
+
+    def dragEnterEvent(self, event: QDragEnterEvent) -> None:  # noqa: N802
+        if _dropped_folder(event) is not None:
+            event.acceptProposedAction()
+
+    def dropEvent(self, event: QDropEvent) -> None:  # noqa: N802
+        folder = _dropped_folder(event)
+        if folder is not None:
+            event.acceptProposedAction()
+            self.load(folder, loading.date_of_folder(folder) or datetime.date.today())
 
     # --- pages
 
@@ -260,11 +266,13 @@ class MainWindow(QMainWindow):
         super().closeEvent(event)
 
 
-def _date(text: str) -> datetime.date | None:
-    try:
-        return datetime.date.fromisoformat(text)
-    except ValueError:
-        return None
+def _dropped_folder(event: QDropEvent) -> Path | None:
+    """The folder dropped on the window, or the folder of the file that was."""
+    for url in event.mimeData().urls():
+        path = Path(url.toLocalFile())
+        if url.isLocalFile() and path.exists():
+            return path if path.is_dir() else path.parent
+    return None
 
 
 def choose_theme(choice: str) -> None:

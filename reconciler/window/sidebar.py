@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 
 from PySide6.QtCore import QRect, QSize, Qt, Signal
-from PySide6.QtGui import QAction, QPainter, QPaintEvent
+from PySide6.QtGui import QAction, QFontMetrics, QPainter, QPaintEvent
 from PySide6.QtWidgets import QAbstractButton, QButtonGroup, QHBoxLayout, QMenu, QSizePolicy, QToolButton, QVBoxLayout, QWidget
 
 from reconciler.window import figures
@@ -126,5 +126,7 @@ class Sidebar(QWidget):
         """The morning's date, and a few words about its files."""
         self.weekday.setText(figures.weekday(date))
         self.weekday.show()
-        self.date.setText(figures.long_date(date))
+        long = figures.long_date(date)
+        wide = QFontMetrics(theme().font("heading", SEMIBOLD)).horizontalAdvance(long)
+        self.date.setText(long if wide <= WIDTH - 62 else figures.date(date))
         self.foot.setText(foot)

@@ -6,7 +6,7 @@ from collections.abc import Mapping
 from typing import Any
 
 from PySide6.QtCore import Qt
-from PySide6.QtGui import QAction
+from PySide6.QtGui import QAction, QShowEvent
 from PySide6.QtWidgets import QFrame, QSplitter, QVBoxLayout, QWidget
 
 from reconciler.window import figures
@@ -44,6 +44,7 @@ class BondsPage(Page):
         self.splitter.setSizes([400, 360])
         self.column.addWidget(self.splitter, 1)
         self._loaded: Any = None
+        self._row = -1
         self.table.current_changed.connect(self._show_bond)
         self.row_opened.connect(lambda _row: self.coupons.setFocus(Qt.FocusReason.ShortcutFocusReason))
 
@@ -70,8 +71,14 @@ class BondsPage(Page):
             return True
         return super().back()
 
+    def showEvent(self, event: QShowEvent) -> None:  # noqa: N802
+        super().showEvent(event)
+        self._show_bond(self._row)
+
     def _show_bond(self, row: int) -> None:
-        if self._loaded is None or row < 0:
+        self._row = row
+        # a page nobody looks at reckons no coupons
+        if self._loaded is None or row < 0 or not self.isVisible():
             return
         title, subtitle = behind.bond_heading(self._loaded.day, row)
         self.title.setText(title)

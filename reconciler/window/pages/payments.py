@@ -29,7 +29,7 @@ class PaymentsPage(Page):
         self.splitter.addWidget(self.detail)
         self.splitter.setStretchFactor(0, 3)
         self.splitter.setStretchFactor(1, 3)
-        self.splitter.setSizes([390, 390])
+        self.splitter.setSizes([372, 412])
         self.column.addWidget(self.splitter, 1)
         self._loaded: Any = None
         self.table.current_changed.connect(self._show_detail)

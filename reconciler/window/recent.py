@@ -1,0 +1,36 @@
+"""The mornings opened before, the last one first, as the settings keep them."""
+
+from __future__ import annotations
+
+import datetime
+from pathlib import Path
+
+from PySide6.QtCore import QSettings
+
+_KEPT = 8
+
+
+def mornings(kept: QSettings) -> list[tuple[Path, datetime.date]]:
+    """Folder and day of each morning opened before."""
+    found = []
+    for number in range(kept.beginReadArray("recent")):
+        kept.setArrayIndex(number)
+        try:
+            day = datetime.date.fromisoformat(str(kept.value("date", "")))
+        except ValueError:
+            continue
+        found.append((Path(str(kept.value("folder", ""))), day))
+    kept.endArray()
+    return found
+
+
+def remember(kept: QSettings, folder: Path, date: str) -> None:
+    """Puts a morning in front of those opened before."""
+    day = datetime.date.fromisoformat(date)
+    list_ = [(folder, day), *(one for one in mornings(kept) if one != (folder, day))][:_KEPT]
+    kept.beginWriteArray("recent", len(list_))
+    for number, (path, when) in enumerate(list_):
+        kept.setArrayIndex(number)
+        kept.setValue("folder", str(path))
+        kept.setValue("date", when.isoformat())
+    kept.endArray()
