@@ -70,3 +70,4 @@ def test_nothing_gives_nothing() -> None:
 def test_joined_row_by_row() -> None:
     joined = texts.join(["a", texts.whole(np.array([1, texts.MISSING])), "b"], 2)
     assert joined.to_pylist() == ["a1b", "ab"]
+

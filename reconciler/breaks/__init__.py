@@ -1,0 +1,1 @@
+"""What does not agree: differences found, put into words, weighed and ranked."""
