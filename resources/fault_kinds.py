@@ -1,7 +1,7 @@
 """Ways of misreading a trade or a coupon, one short function each, for `make_faults.py`.
 
-A fault alters the facts or the terms as one party read them, or slips in what that party then tells; everything it tells is
-reckoned from there by the scalar reckoning in `tests/oracle`. Several faults can be put into one reading.
+A fault alters the facts or the terms as one party read them, or slips in what that party then tells; everything it
+tells is reckoned from there by the scalar reckoning in `tests/oracle`. Several faults can be put into one reading.
 """
 
 from __future__ import annotations
@@ -13,16 +13,18 @@ from datetime import date, timedelta
 from fractions import Fraction
 from typing import Any
 
-from tests.oracle import bank, issues
+from tests.oracle import issues
 from tests.oracle.arithmetic import DIGITS, Bond, coupon_amount, factor_at, half_up, period_at, periods
-from tests.oracle.deals import ACCOUNTS, Trade, reckon
+from tests.oracle.deals import reckon
 
 TODAY, SINCE = date(2026, 3, 31), date(2026, 3, 17)
 
 
 @dataclass
 class Reading:
-    """How a party read a trade: the terms and facts it believes, the day it accrues to, and slips in what it then tells."""
+    """How a party read a trade: the terms and facts it believes, the day it accrues to, and slips in what it then
+    tells.
+    """
 
     bond: Bond
     facts: dict[str, Any]
@@ -62,7 +64,11 @@ def _to_trade_date(r: Reading, rng: random.Random) -> bool:
 def _from_issue(r: Reading, rng: random.Random) -> bool:
     """Interest counted from the start of interest, not from the last coupon, as money-market days."""
     period = period_at(r.bond, r.facts["settlement_date"])
-    if period is None or r.bond.day_count not in ("Act/360", "Act/365F", "30/360", "30E/360") or period.start == r.bond.accrual_start:
+    if (
+        period is None
+        or r.bond.day_count not in ("Act/360", "Act/365F", "30/360", "30E/360")
+        or period.start == r.bond.accrual_start
+    ):
         return False
     r.bond = replace(r.bond, first_coupon=period.end)
     return r.bond.kind == "fixed"
@@ -119,10 +125,12 @@ def _plus_lost(r: Reading, rng: random.Random) -> Fraction | None:
 
 def _decimals_as_ticks(r: Reading, rng: random.Random) -> Fraction | None:
     whole, _, rest = str(r.facts["price_text"]).partition(".")
-    return int(whole) + Fraction(int(rest), 32) if r.bond.quote == "price" and len(rest) == 2 and int(rest) <= 31 else None
+    return (
+        int(whole) + Fraction(int(rest), 32) if r.bond.quote == "price" and len(rest) == 2 and int(rest) <= 31 else None
+    )
 
 
-def _digits_exchanged(r: Reading, rng: random.Random) -> Fraction | None:
+def _digitsexchanged(r: Reading, rng: random.Random) -> Fraction | None:
     text = str(r.facts["price_text"])
     places = [n for n in range(len(text) - 1) if text[n : n + 2].isdigit() and text[n] != text[n + 1]]
     if r.bond.quote != "price" or not places:
@@ -217,7 +225,7 @@ def _without_accrued(r: Reading, rng: random.Random) -> bool:
 
 def _rounded_per_hundred(r: Reading, rng: random.Random) -> bool:
     r.bond = replace(r.bond, accrued_rounding="100:3")
-    return not r.facts["accrued"] == 0 and r.facts["face"] > 10**8
+    return r.facts["accrued"] != 0 and r.facts["face"] > 10**8
 
 
 def _amount(change: Callable[[int, random.Random], int]) -> Fault:
@@ -231,7 +239,7 @@ def _amount(change: Callable[[int, random.Random], int]) -> Fault:
     return fault
 
 
-def _exchanged(number: int, rng: random.Random) -> int:
+def exchanged(number: int, rng: random.Random) -> int:
     digits = list(str(number))
     places = [n for n in range(len(digits) - 1) if digits[n] != digits[n + 1] and (n or digits[1] != "0")]
     if not places:
@@ -260,6 +268,7 @@ def _days_and_months_exchanged(r: Reading, rng: random.Random) -> bool:
 
 
 THIRTY, ACTUAL = ("30/360", "30E/360", "30E/360 ISDA"), ("Act/Act ICMA", "Act/365F", "Act/360", "Act/Act ISDA")
+
 TRADE_FAULTS: dict[str, Fault] = {
     "30/360 for actual": _day_count("30/360", ("Act/Act ICMA", "Act/365F", "Act/Act ISDA")),
     "30E/360 for actual": _day_count("30E/360", ("Act/Act ICMA",)),
@@ -277,7 +286,7 @@ TRADE_FAULTS: dict[str, Fault] = {
     "32nds as decimals": _price(_ticks_as_decimals),
     "plus lost": _price(_plus_lost),
     "decimals as 32nds": _price(_decimals_as_ticks),
-    "price digits exchanged": _price(_digits_exchanged),
+    "price digits exchanged": _price(_digitsexchanged),
     "price cut to two places": _price(_cut_to(2)),
     "price with accrued": _dirty_as_clean,
     "face ten times": _face_times(Fraction(10), Fraction(1, 10)),
@@ -291,94 +300,9 @@ TRADE_FAULTS: dict[str, Fault] = {
     "fee added on a sale": _fee_added_on_a_sale,
     "without accrued": _without_accrued,
     "accrued rounded per 100": _rounded_per_hundred,
-    "amount digits exchanged": _amount(_exchanged),
+    "amount digits exchanged": _amount(exchanged),
     "amount digit dropped": _amount(lambda n, rng: int(str(n)[:-1] or 1)),
     "amount point moved": _amount(lambda n, rng: n * 10),
     "minus lost": _minus_lost,
     "day and month exchanged": _days_and_months_exchanged,
-}
-
-
-def _bank_sign(trade: Trade, rng: random.Random) -> bool:
-    trade.bank[0].amount = -trade.bank[0].amount
-    return True
-
-
-def _bank_days(trade: Trade, rng: random.Random) -> bool:
-    day = trade.bank[0].value_date + timedelta(days=1)
-    trade.bank[0].value_date = day
-    return day <= TODAY
-
-
-def _bank_charge(trade: Trade, rng: random.Random) -> bool:
-    trade.bank[0].amount -= rng.choice((1000, 1500, 2000, 2500))
-    return trade.bond.currency != "JPY"
-
-
-def _bank_account(trade: Trade, rng: random.Random) -> bool:
-    trade.bank[0].account = rng.choice([name for name in ACCOUNTS if name != trade.true["account"]])
-    return True
-
-
-def _bank_without_accrued(trade: Trade, rng: random.Random) -> bool:
-    trade.bank[0].amount += trade.true["side"] * trade.true["accrued"]
-    return abs(trade.true["accrued"]) > 100
-
-
-BANK_FAULTS: dict[str, Callable[[Trade, random.Random], bool]] = {
-    "bank: sign": _bank_sign,
-    "bank: a day late": _bank_days,
-    "bank: charge": _bank_charge,
-    "bank: other account": _bank_account,
-    "bank: without accrued": _bank_without_accrued,
-}
-
-
-def _due_amount(change: Callable[[bank.Due, random.Random], int | None]) -> Callable[[bank.Due, random.Random], bool]:
-    def fault(due: bank.Due, rng: random.Random) -> bool:
-        amount = change(due, rng) if due.truth.kind == "coupon" else None
-        if amount is None or abs(amount - due.bank[0].amount) < 5:
-            return False
-        due.bank[0].amount = amount
-        return True
-
-    return fault
-
-
-def _taxed(due: bank.Due, rng: random.Random) -> int:
-    return half_up(due.bank[0].amount * rng.choice((Fraction(85, 100), Fraction(70, 100), Fraction(65, 100), Fraction(74, 100))))
-
-
-def _of_a_year(due: bank.Due, rng: random.Random) -> int | None:
-    return half_up(due.face * due.bond.rate / 100) if due.bond.frequency > 1 and due.bond.kind == "fixed" else None
-
-
-def _whole_coupon(due: bank.Due, rng: random.Random) -> int | None:
-    period = next(p for p in periods(due.bond) if p.end == due.coupon_date)
-    if period.regular or due.bond.kind != "fixed":
-        return None
-    return half_up(due.face * due.bond.rate / 100 / due.bond.frequency)
-
-
-def _rate_of_before(due: bank.Due, rng: random.Random) -> int | None:
-    period = next(p for p in periods(due.bond) if p.end == due.coupon_date)
-    steps = [(day, value) for day, value in due.bond.steps if day < period.start]
-    if due.bond.kind not in ("floating", "stepped") or not steps:
-        return None
-    return coupon_amount(replace(due.bond, steps=steps), period, due.face)
-
-
-def _on_unadjusted_date(due: bank.Due, rng: random.Random) -> bool:
-    due.bank[0].value_date = due.coupon_date
-    return due.truth.day != due.coupon_date
-
-
-DUE_FAULTS: dict[str, Callable[[bank.Due, random.Random], bool]] = {
-    "coupon: tax": _due_amount(_taxed),
-    "coupon: of a year": _due_amount(_of_a_year),
-    "coupon: odd period as a whole one": _due_amount(_whole_coupon),
-    "coupon: rate of before": _due_amount(_rate_of_before),
-    "coupon: charge": _due_amount(lambda due, rng: due.bank[0].amount - 1500 if due.bond.currency != "JPY" else None),
-    "coupon: digits exchanged": _due_amount(lambda due, rng: _exchanged(due.bank[0].amount, rng) if due.bank[0].amount > 0 else None),
-    "coupon: unadjusted date": _on_unadjusted_date,
 }

@@ -1,8 +1,9 @@
-"""Makes a morning in which every payment carries one planted fault (or two) of a known kind, to test the search for causes.
+"""Makes a morning in which every payment carries one planted fault (or two) of a known kind, to test the search for
+causes.
 
-`python resources/make_faults.py FOLDER --payments 10000 [--seed 1] [--pairs]` writes a morning folder and `truth.csv` beside its
-files: which payment, which party, which kind or kinds. Nothing of the program is used, so its search for causes is held against
-figures that it had no hand in. The kinds are in `fault_kinds.py`.
+`python resources/make_faults.py FOLDER --payments 10000 [--seed 1] [--pairs]` writes a morning folder and `truth.csv`
+beside its files: which payment, which party, which kind or kinds. Nothing of the program is used, so its search for
+causes is held against figures that it had no hand in. The kinds are in `fault_kinds.py`.
 """
 
 from __future__ import annotations
@@ -15,7 +16,8 @@ from pathlib import Path
 
 sys.path[:0] = [str(Path(__file__).resolve().parent.parent), str(Path(__file__).resolve().parent)]
 
-from fault_kinds import BANK_FAULTS, DUE_FAULTS, SINCE, TODAY, TRADE_FAULTS, Reading
+from fault_kinds import SINCE, TODAY, TRADE_FAULTS, Reading
+from fault_kinds_bank import BANK_FAULTS, DUE_FAULTS
 
 from tests.oracle import bank, deals, issues
 from tests.oracle.arithmetic import Bond, payment_date
@@ -24,7 +26,9 @@ from tests.oracle.world import CLOSINGS, World
 
 
 def plant(trade: Trade, party: str, names: list[str], rng: random.Random) -> bool:
-    """Lets a party misread a trade in the ways named; False where one of them cannot happen to it or nothing it tells differs."""
+    """Lets a party misread a trade in the ways named; False where one of them cannot happen to it or nothing it tells
+    differs.
+    """
     reading = Reading(trade.bond, dict(trade.true))
     if not all(TRADE_FAULTS[name](reading, rng) for name in names):
         return False
@@ -46,8 +50,12 @@ def make(folder: Path, payments: int, seed: int, pairs: bool) -> list[tuple[str,
     rng = random.Random(seed)
     scene = issues.Scene(rng, SINCE, TODAY, CLOSINGS)
     bonds = [maker(scene) for _ in range(max(3, payments // 400)) for maker in issues.KINDS.values()]
-    # Coupons hang on what is held, so trades are in bonds that pay nothing in the window and coupons in bonds nobody trades.
-    paying = {bond.bond for bond in bonds if any(SINCE <= payment_date(bond, day) <= TODAY for _, day, _ in bank.payments(bond))}
+    # Coupons hang on what is held: trades are in bonds that pay nothing in the window, coupons in bonds nobody trades.
+    paying = {
+        bond.bond
+        for bond in bonds
+        if any(SINCE <= payment_date(bond, day) <= TODAY for _, day, _ in bank.payments(bond))
+    }
     quiet, paying_bonds = [b for b in bonds if b.bond not in paying], [b for b in bonds if b.bond in paying]
     trades: list[Trade] = []
     truth: list[tuple[str, str, str, str]] = []
@@ -105,7 +113,9 @@ def _plant_dues(dues: list[bank.Due], most: int, rng: random.Random) -> list[tup
     return truth
 
 
-def _write(folder: Path, bonds: list[Bond], trades: list[Trade], dues: list[bank.Due], positions: bank.Positions) -> None:
+def _write(
+    folder: Path, bonds: list[Bond], trades: list[Trade], dues: list[bank.Due], positions: bank.Positions
+) -> None:
     """The folder: holdings as of the morning itself, in bonds nobody trades."""
     world = World(SINCE, TODAY, bonds, trades, dues, positions, dict.fromkeys(ACCOUNTS, TODAY))
     world.bond_rows = [issues.row(bond) for bond in bonds]

@@ -1,8 +1,10 @@
-"""Makes `sample_tickets/`: three mornings of an invented investment house, so that the program can be tried without own files.
+"""Makes `sample_tickets/`: three mornings of an invented investment house, so that the program can be tried without
+own files.
 
-Run from a checkout: `python resources/make_sample.py`. Every run gives the same bytes. The amounts come from the scalar reckoning
-in `tests/oracle`, not from the program, so the sample is also a witness. Each folder is what was known on its morning: the last ten
-business days in full, cash only for days before it. Faults lie in `resources/sample_faults.py`, told with what ends them.
+Run from a checkout: `python resources/make_sample.py`. Every run gives the same bytes. The amounts come from the
+scalar reckoning in `tests/oracle`, not from the program, so the sample is also a witness. Each folder is what was
+known on its morning: the last ten business days in full, cash only for days before it. Faults lie in
+`resources/sample_faults.py`, told with what ends them.
 """
 
 from __future__ import annotations
@@ -18,7 +20,7 @@ from typing import Any
 
 sys.path[:0] = [str(Path(__file__).resolve().parent.parent), str(Path(__file__).resolve().parent)]
 
-from tests.oracle import bank, deals, issues, writing
+from tests.oracle import bank, deals, issues, manners, writing
 from tests.oracle.arithmetic import Bond, months_on
 from tests.oracle.bank import Due, Positions
 from tests.oracle.deals import Entry, Trade
@@ -77,7 +79,14 @@ def cast(scene: issues.Scene) -> dict[str, Bond]:
         maturity = months_on(coupon, 12 * years, False)
         return scene.new(currency, calendar, "fixed", maturity, months_on(coupon, -48, False), **terms)
 
-    sterling = {"rate": Fraction(17, 4), "frequency": 2, "settlement_days": 1, "ex_dividend": "6b", "record": "7b", "market": "UK_GILT"}
+    sterling = {
+        "rate": Fraction(17, 4),
+        "frequency": 2,
+        "settlement_days": 1,
+        "ex_dividend": "6b",
+        "record": "7b",
+        "market": "UK_GILT",
+    }
     found = {
         "weekend": fixed("USD", "XFED", date(2026, 3, 28), 5, **two_five),
         "weekend in euro": fixed("EUR", "XECB", date(2026, 3, 29), 7, rate=Fraction(25, 8), frequency=1),
@@ -88,9 +97,13 @@ def cast(scene: issues.Scene) -> dict[str, Bond]:
         "late": fixed("EUR", "XECB", date(2026, 3, 27), 6, rate=Fraction(33, 8), frequency=1, day_count="30E/360"),
         "late too": fixed("JPY", "JP", date(2026, 3, 30), 8, rate=Fraction(9, 8), frequency=2, settlement_days=1),
         "face of old": fixed("USD", "XFED", date(2026, 3, 25), 2, **{**two_five, "rate": Fraction(7, 2)}),
-        "face of old too": fixed("GBP", "XLON", date(2026, 3, 31), 2, rate=Fraction(6), frequency=4, day_count="Act/365F"),
+        "face of old too": fixed(
+            "GBP", "XLON", date(2026, 3, 31), 2, rate=Fraction(6), frequency=4, day_count="Act/365F"
+        ),
         "in two": fixed("USD", "XFED", date(2026, 3, 24), 11, **{**two_five, "rate": Fraction(41, 8)}),
-        "to another account": fixed("GBP", "XLON", date(2026, 3, 30), 5, rate=Fraction(5), frequency=4, day_count="Act/365F"),
+        "to another account": fixed(
+            "GBP", "XLON", date(2026, 3, 30), 5, rate=Fraction(5), frequency=4, day_count="Act/365F"
+        ),
     }
     short = fixed("EUR", "XECB", date(2026, 3, 27), 10, rate=Fraction(29, 8), frequency=1)
     short.first_coupon, short.accrual_start = date(2026, 3, 27), date(2025, 8, 14)
@@ -101,10 +114,31 @@ def cast(scene: issues.Scene) -> dict[str, Bond]:
     return found
 
 
-EXTRA = ("treasury",) * 7 + ("month end",) * 3 + ("bill",) * 5 + ("zero of thirty years",) * 3 + ("zero",) * 2 + (
-    "US company",) * 5 + ("bund",) * 7 + ("gilt",) * 6 + ("European",) * 5 + ("quarterly",) * 5 + ("Japanese",) * 6 + (
-    "euro floater", "dollar floater", "maturing", "maturing", "zero that matures", "zero that matures", "maturing gilt",
-    "short first", "short first in months", "long first counted")  # fmt: skip
+EXTRA = (
+    ("treasury",) * 7
+    + ("month end",) * 3
+    + ("bill",) * 5
+    + ("zero of thirty years",) * 3
+    + ("zero",) * 2
+    + ("US company",) * 5
+    + ("bund",) * 7
+    + ("gilt",) * 6
+    + ("European",) * 5
+    + ("quarterly",) * 5
+    + ("Japanese",) * 6
+    + (
+        "euro floater",
+        "dollar floater",
+        "maturing",
+        "maturing",
+        "zero that matures",
+        "zero that matures",
+        "maturing gilt",
+        "short first",
+        "short first in months",
+        "long first counted",
+    )
+)
 
 
 def invent() -> tuple[Story, dict[str, Bond], random.Random]:
@@ -124,7 +158,9 @@ def invent() -> tuple[Story, dict[str, Bond], random.Random]:
         bond = rng.choice(story.bonds)
         if len(story.trades) % 10 == 4:
             # enough of what the faults ask for: bills, long zeros, notes in 32nds, gilts about to pay
-            bond = rng.choice([b for b in story.bonds if b.quote != "price" or b.maturity.year > 2045 or b is players["ex dividend"]])
+            bond = rng.choice(
+                [b for b in story.bonds if b.quote != "price" or b.maturity.year > 2045 or b is players["ex dividend"]]
+            )
         if len(story.trades) == 40:
             bond = players["not on file"]
         trade = deals.deal(scene, bond, len(story.trades) + 1)
@@ -137,7 +173,9 @@ def invent() -> tuple[Story, dict[str, Bond], random.Random]:
     positions.first = {key: abs(face) for key, face in positions.first.items()}
     for name, bond in players.items():
         if name != "not on file":
-            positions.first[deals.ACCOUNTS[len(name) % 4], bond.bond] = deals.face_for(bond, rng) // 10**7 * 10**7 + 25 * 10**7
+            positions.first[deals.ACCOUNTS[len(name) % 4], bond.bond] = (
+                deals.face_for(bond, rng) // 10**7 * 10**7 + 25 * 10**7
+            )
     story.dues = bank.expect(story.bonds, positions, SINCE[0], MORNINGS[-1], rng)
     for number, due in enumerate(story.dues, 1):
         bank.pay(due, number, rng)
@@ -176,8 +214,10 @@ def write(story: Story, folder: Path) -> None:
         _write_cash(story, target, number)
         _write_holdings(story, target, number)
         _write_rates(known, target)
-        for manner in writing.MANNERS:
-            told = [t.row for t in story.confirmations if t.first <= number <= t.last and t.row["broker"] == manner.broker]
+        for manner in manners.MANNERS:
+            told = [
+                t.row for t in story.confirmations if t.first <= number <= t.last and t.row["broker"] == manner.broker
+            ]
             if told:
                 writing.confirmation_file(target / f"confirmations/{manner.stem}_{today:%Y%m%d}.csv", told, manner)
             if told and manner.layout:
@@ -190,16 +230,28 @@ def _write_cash(story: Story, target: Path, number: int) -> None:
     for told in story.cash:
         e: Entry = told.row
         if told.first <= number <= told.last and e.entry not in gone:
-            rows.append({"entry": e.entry, "account": e.account, "currency": e.currency, "value_date": e.value_date.isoformat(),
-                         "booked_date": writing.day_text(e.booked_date), "amount": writing.money(e.amount, e.currency),
-                         "narrative": e.narrative, "reference": e.reference, "bond": e.bond})  # fmt: skip
+            rows.append(
+                {
+                    "entry": e.entry,
+                    "account": e.account,
+                    "currency": e.currency,
+                    "value_date": e.value_date.isoformat(),
+                    "booked_date": writing.day_text(e.booked_date),
+                    "amount": writing.money(e.amount, e.currency),
+                    "narrative": e.narrative,
+                    "reference": e.reference,
+                    "bond": e.bond,
+                }
+            )
     rows.sort(key=lambda row: (row["value_date"], row["account"], row["entry"]))
     columns = ("entry", "account", "currency", "value_date", "booked_date", "amount", "narrative", "reference", "bond")
     writing.plain_file(target / "cash.csv", columns, rows)
 
 
 def _write_holdings(story: Story, target: Path, number: int) -> None:
-    """What was held the evening before; trades that failed to settle stand as if they had, as position systems show them."""
+    """What was held the evening before; trades that failed to settle stand as if they had, as position systems show
+    them.
+    """
     positions = story.positions
     assert positions
     evening = MORNINGS[number] - timedelta(days=3 if number == 0 else 1)
@@ -208,13 +260,24 @@ def _write_holdings(story: Story, target: Path, number: int) -> None:
     for account, bond in positions.all():
         face = positions.held(account, bond, evening)
         if face:
-            rows.append({"account": account, "bond": bond, "face": writing.money(face, currency[bond]), "as_of": evening.isoformat()})
+            rows.append(
+                {
+                    "account": account,
+                    "bond": bond,
+                    "face": writing.money(face, currency[bond]),
+                    "as_of": evening.isoformat(),
+                }
+            )
     writing.plain_file(target / "holdings.csv", ("account", "bond", "face", "as_of"), rows)
 
 
 def _write_rates(bonds: list[Bond], target: Path) -> None:
-    rows = [{"bond": bond.bond, "from": day.isoformat(), "rate": issues.text(rate)}
-            for bond in bonds if bond.kind == "floating" for day, rate in bond.steps]  # fmt: skip
+    rows = [
+        {"bond": bond.bond, "from": day.isoformat(), "rate": issues.text(rate)}
+        for bond in bonds
+        if bond.kind == "floating"
+        for day, rate in bond.steps
+    ]
     writing.plain_file(target / "rates.csv", ("bond", "from", "rate"), rows)
 
 

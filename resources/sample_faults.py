@@ -1,7 +1,8 @@
 """What goes wrong on the three mornings of the sample, one short call each, and how it ends.
 
-A fault shows on one morning (0, 1, 2) and is gone on a later one where somebody put it right: the broker sends an amended
-confirmation, the desk amends its ticket, the bank's entry comes late or is reversed. Those without an end stay.
+A fault shows on one morning (0, 1, 2) and is gone on a later one where somebody put it right: the broker sends an
+amended confirmation, the desk amends its ticket, the bank's entry comes late or is reversed. Those without an end
+stay.
 """
 
 from __future__ import annotations
@@ -54,19 +55,31 @@ class Stage:
 
     def due(self, bond: Bond) -> Due:
         """The largest payment of one of the cast."""
-        mine = [due for due in self.story.dues if due.bond is bond and due.account + due.bond.bond not in self.story.touched]
+        mine = [
+            due for due in self.story.dues if due.bond is bond and due.account + due.bond.bond not in self.story.touched
+        ]
         chosen = max(mine, key=lambda due: abs(due.truth.amount or 0))
         self.story.touched.add(chosen.account + bond.bond)
         chosen.bank = [replace(chosen.bank[0], amount=chosen.truth.amount, bond=bond.bond)]
         return chosen
 
     def note(self, morning: int, end: int | None, trade: Trade | Due, what: str) -> None:
-        name = f"trade {trade.true['ticket']}" if isinstance(trade, Trade) else " ".join((
-            trade.truth.kind, trade.account, trade.bond.description, trade.coupon_date.isoformat()))  # fmt: skip
+        name = (
+            f"trade {trade.true['ticket']}"
+            if isinstance(trade, Trade)
+            else " ".join((trade.truth.kind, trade.account, trade.bond.description, trade.coupon_date.isoformat()))
+        )
         self.story.notes.append((morning, end, name, what))
 
-    def confirmed(self, morning: int, end: int | None, what: str, alter: str, wanted: Wanted = lambda t: True,
-                  settled: bool | None = None) -> Trade:  # fmt: skip
+    def confirmed(
+        self,
+        morning: int,
+        end: int | None,
+        what: str,
+        alter: str,
+        wanted: Wanted = lambda t: True,
+        settled: bool | None = None,
+    ) -> Trade:
         """The broker tells something wrong; with an end, it sends an amended confirmation."""
         for skip in range(len(self.story.trades)):
             trade = self.pick(morning, wanted, settled, skip)
@@ -144,16 +157,33 @@ def happen(story: Story, players: dict[str, Bond], rng: random.Random) -> None:
 def _first(s: Stage) -> None:
     zero = s.silent(0, 1, "thirty-year zero not confirmed; the confirmation comes a day late", _thirty_years)
     _resize(s, zero, 20_000_000_00)
-    s.confirmed(0, 1, "broker accrues under another day count; corrected next morning", "broker's day count", _coupon_bond, False)
-    s.confirmed(0, 2, "broker reads 32nds as decimals; corrected on the third morning", "32nds as decimals", _is(quote="32nds"))
-    s.confirmed(0, None, "fee stands only on our ticket", "fee on the ticket only", lambda t: bool(t.true["fees"]), False)
-    s.confirmed(0, 1, "broker settles a day later than the market; corrected next morning", "broker settles later", _coupon_bond)
+    s.confirmed(
+        0,
+        1,
+        "broker accrues under another day count; corrected next morning",
+        "broker's day count",
+        _coupon_bond,
+        False,
+    )
+    s.confirmed(
+        0, 2, "broker reads 32nds as decimals; corrected on the third morning", "32nds as decimals", _is(quote="32nds")
+    )
+    s.confirmed(
+        0, None, "fee stands only on our ticket", "fee on the ticket only", lambda t: bool(t.true["fees"]), False
+    )
+    s.confirmed(
+        0, 1, "broker settles a day later than the market; corrected next morning", "broker settles later", _coupon_bond
+    )
     s.confirmed(0, None, "broker accrues a day or two too many", "broker's days", _coupon_bond)
     s.confirmed(0, None, "confirmation sent twice", "confirmed twice")
     again = next(t for t in s.story.trades if t.more_confirmations)
     s.story.confirmations.append(type(s.story.tickets[0])(again.more_confirmations[0], 0))
-    s.confirmed(0, None, "broker names another account", "broker's account", lambda t: t.true["account"] == t.broker["account"])
-    s.confirmed(0, 2, "digits of the broker's amount exchanged; corrected on the third morning", "broker's amount mistyped")
+    s.confirmed(
+        0, None, "broker names another account", "broker's account", lambda t: t.true["account"] == t.broker["account"]
+    )
+    s.confirmed(
+        0, 2, "digits of the broker's amount exchanged; corrected on the third morning", "broker's amount mistyped"
+    )
     s.confirmed(0, 1, "broker confirms in another currency; corrected next morning", "broker's currency")
     s.ticketed(0, 1, "our ticket has the wrong face; amended next morning", "desk's face")
     s.ticketed(0, 1, "our ticket has the wrong side; amended next morning", "desk's side")
@@ -211,7 +241,12 @@ def _coupons(s: Stage, players: dict[str, Bond]) -> None:
         due = s.due(players[name])
         due.bank[0].value_date = date(2026, 3, 27)
         s.entry(due.bank[0], morning)
-        s.note(morning, None, due, "coupon paid on its unadjusted date, or the business day before it, instead of the next one")
+        s.note(
+            morning,
+            None,
+            due,
+            "coupon paid on its unadjusted date, or the business day before it, instead of the next one",
+        )
     for name, kept, morning in (("taxed", 85, 0), ("taxed too", 74, 1)):
         due = s.due(players[name])
         due.bank[0].amount = half_up(Fraction(due.bank[0].amount * kept, 100))
@@ -227,8 +262,16 @@ def _coupons(s: Stage, players: dict[str, Bond]) -> None:
         s.note(morning, None, due, "coupon paid on an older, smaller face")
     due = s.due(players["in two"])
     part = due.bank[0].amount * 2 // 5
-    due.bank = [replace(due.bank[0], amount=part), replace(due.bank[0], entry=due.bank[0].entry + "B", amount=due.bank[0].amount - part - 1)]
-    s.note(0, None, due, "coupon in two entries, each cut to the cent: one cent short in all, within tolerance and no break")
+    due.bank = [
+        replace(due.bank[0], amount=part),
+        replace(due.bank[0], entry=due.bank[0].entry + "B", amount=due.bank[0].amount - part - 1),
+    ]
+    s.note(
+        0,
+        None,
+        due,
+        "coupon in two entries, each cut to the cent: one cent short in all, within tolerance and no break",
+    )
     due = s.due(players["to another account"])
     due.bank[0].account = ACCOUNTS[(ACCOUNTS.index(due.account) + 1) % 4]
     s.note(1, None, due, "coupon booked to another of our accounts")
@@ -251,18 +294,33 @@ def _bank(s: Stage) -> None:
     first = trade.bank[0]
     second = replace(first, entry=first.entry + "R")
     s.entry(second, 0)
-    s.entry(replace(second, entry=first.entry + "S", amount=-first.amount, narrative="REVERSAL " + first.narrative,
-                    booked_date=s.mornings[0]), 1)  # fmt: skip
+    s.entry(
+        replace(
+            second,
+            entry=first.entry + "S",
+            amount=-first.amount,
+            narrative="REVERSAL " + first.narrative,
+            booked_date=s.mornings[0],
+        ),
+        1,
+    )
     s.note(0, None, trade, "bank booked a settlement twice; it reverses the second one next morning")
     trade = s.pick(0, _named, settled=True)
     trade.bank[0].value_date += timedelta(days=1)
     s.note(0, None, trade, "bank booked a settlement for a wrong day")
-    for number, (morning, amount, account, words) in enumerate((
-        (0, -125000, 0, "CUSTODY FEE FIRST QUARTER"), (0, 4812350, 2, "TO BE ADVISED"), (1, 99125, 1, "COUPON"),
-        (2, -3350, 3, "CHARGES"),
-    )):  # fmt: skip
+    for number, (morning, amount, account, words) in enumerate(
+        (
+            (0, -125000, 0, "CUSTODY FEE FIRST QUARTER"),
+            (0, 4812350, 2, "TO BE ADVISED"),
+            (1, 99125, 1, "COUPON"),
+            (2, -3350, 3, "CHARGES"),
+        )
+    ):
         day = s.mornings[morning] - timedelta(days=3 if morning == 0 else 1)
-        s.entry(Entry(f"X{number + 1:05d}", ACCOUNTS[account], ("USD", "EUR", "GBP", "EUR")[number], day, amount, words), morning)
+        s.entry(
+            Entry(f"X{number + 1:05d}", ACCOUNTS[account], ("USD", "EUR", "GBP", "EUR")[number], day, amount, words),
+            morning,
+        )
         s.story.notes.append((morning, None, f"bank X{number + 1:05d}", "entry that nothing explains"))
 
 
@@ -291,11 +349,16 @@ def page(story: Story) -> str:
     """The sample's own README: what happens on each morning and how it ends."""
     from make_sample import MORNINGS
 
-    lines = ["# Three mornings of an invented house", "",
-             "Every name, bond and amount here is invented (identifiers begin with ZZ). Made by `python resources/make_sample.py`; each",
-             "folder holds what was known on its morning: tickets, confirmations of four brokers in four layouts, holdings of the evening",
-             "before, and the bank's entries up to the day before. Open one in the window, or run",
-             "`python -m reconciler morning sample_tickets/2026-03-30 --date 2026-03-30 --out out`.", ""]  # fmt: skip
+    lines = [
+        "# Three mornings of an invented house",
+        "",
+        "Every name, bond and amount here is invented (identifiers begin with ZZ). Made by",
+        "`python resources/make_sample.py`;",
+        "each folder holds what was known on its morning: tickets, confirmations of four brokers in four",
+        "layouts, holdings of the evening before, and the bank's entries up to the day before. Open one, or run",
+        "`python -m reconciler morning sample_tickets/2026-03-30 --date 2026-03-30 --out out`.",
+        "",
+    ]
     for number, morning in enumerate(MORNINGS):
         lines += [f"## {morning.isoformat()}", "", "| payment | what happened | gone on |", "| --- | --- | --- |"]
         for first, end, name, what in sorted(story.notes, key=lambda note: (note[0], note[2], note[3])):

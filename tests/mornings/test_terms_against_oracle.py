@@ -1,6 +1,8 @@
-"""Forty-nine kinds of bond around five mornings, the program's columns against the scalar reckoning: dates, accrued, coupons, cash.
+"""Forty-nine kinds of bond around five mornings, the program's columns against the scalar reckoning: dates, accrued,
+coupons, cash.
 
-The mornings lie around a month end on a weekend, a leap day, the year's turn of fixings and the US change of cycle in May 2024.
+The mornings lie around a month end on a weekend, a leap day, the year's turn of fixings and the US change of cycle in
+May 2024.
 """
 
 from __future__ import annotations
@@ -22,8 +24,13 @@ from tests.oracle.arithmetic import Bond
 from tests.oracle.issues import KINDS, Scene, row
 from tests.oracle.world import CLOSINGS as DAYS
 
-WINDOWS = (("2026-03-17", "2026-03-31"), ("2026-05-20", "2026-06-02"), ("2026-01-20", "2026-02-03"), ("2028-02-20", "2028-03-01"),
-           ("2024-05-20", "2024-06-03"))  # fmt: skip
+WINDOWS = (
+    ("2026-03-17", "2026-03-31"),
+    ("2026-05-20", "2026-06-02"),
+    ("2026-01-20", "2026-02-03"),
+    ("2028-02-20", "2028-03-01"),
+    ("2024-05-20", "2024-06-03"),
+)
 
 
 def _days(texts: list[Any]) -> np.ndarray:
@@ -32,7 +39,11 @@ def _days(texts: list[Any]) -> np.ndarray:
 
 def _steps(bonds: list[Bond], kinds: tuple[str, ...], schema: dict[str, str], column: str, scale: int) -> Table:
     told = [(bond.bond, day, value) for bond in bonds if bond.kind in kinds for day, value in bond.steps]
-    columns: dict[str, Any] = {"bond": [t[0] for t in told], "from": _days([t[1] for t in told]), column: [int(t[2] * scale) for t in told]}
+    columns: dict[str, Any] = {
+        "bond": [t[0] for t in told],
+        "from": _days([t[1] for t in told]),
+        column: [int(t[2] * scale) for t in told],
+    }
     return table(schema, len(told), **columns)
 
 
@@ -49,10 +60,15 @@ def _terms(bonds: list[Bond]) -> Terms:
             columns[name] = [int(Fraction(text) * scale) if text else MISSING for text in told]
         elif name not in ("file", "line"):
             columns[name] = told
-    closings = table(CLOSINGS, len(DAYS), calendar=[d[0] for d in DAYS], date=_days([d[1] for d in DAYS]), open=[d[2] for d in DAYS])
+    closings = table(
+        CLOSINGS, len(DAYS), calendar=[d[0] for d in DAYS], date=_days([d[1] for d in DAYS]), open=[d[2] for d in DAYS]
+    )
     terms, problems = resolve_terms(
-        table(BONDS, len(rows), **columns), _steps(bonds, ("stepped", "floating"), RATES, "rate_e9", 10**9),
-        _steps(bonds, ("linked", "amortising"), FACTORS, "factor_e12", 10**12), closings)  # fmt: skip
+        table(BONDS, len(rows), **columns),
+        _steps(bonds, ("stepped", "floating"), RATES, "rate_e9", 10**9),
+        _steps(bonds, ("linked", "amortising"), FACTORS, "factor_e12", 10**12),
+        closings,
+    )
     assert not problems
     return terms
 
@@ -73,12 +89,16 @@ def _trades(terms: Terms, number: int, bond: Bond, since: date, face: int, rng: 
     days = [day for n in range(60) if deals.tradeable(bond, day := since + timedelta(days=n - 15))]
     prices = [deals.price_for(bond, rng)[0] for _ in days]
     rows = np.full(len(days), number)
-    found = settlement.settle(terms, rows, _days(days), np.full(len(days), face), np.array([int(p * 10**12) for p in prices], np.int64))
+    found = settlement.settle(
+        terms, rows, _days(days), np.full(len(days), face), np.array([int(p * 10**12) for p in prices], np.int64)
+    )
     expected = [arithmetic.accrued(bond, day, face) for day in days]
     assert found.accrued_minor.tolist() == [e[1] for e in expected]
     assert found.accrued_days.tolist() == [e[0] for e in expected]
     assert found.ex.tolist() == [e[2] for e in expected]
-    assert found.principal_minor.tolist() == [arithmetic.principal(bond, p, day, face) for p, day in zip(prices, days, strict=True)]
+    assert found.principal_minor.tolist() == [
+        arithmetic.principal(bond, p, day, face) for p, day in zip(prices, days, strict=True)
+    ]
     if bond.settlement_days is not None:
         assert settlement.settlement_dates(terms, rows, _days(days)).tolist() == [bond.settles(day) for day in days]
 

@@ -1,24 +1,23 @@
 """What a bond's terms say must be paid, reckoned one payment at a time in whole numbers and fractions.
 
-Written from the contract of the files and the definitions of the day counts (ISDA 2006 section 4.16, ICMA rule 251), not from the
-program; slow and obvious on purpose. Not handled: anything the generator does not invent (call dates, compounded coupons).
+Written from the contract of the files and the definitions of the day counts (ISDA 2006 section 4.16, ICMA rule 251),
+not from the program; slow and obvious on purpose. Not handled: anything the generator does not invent (call dates,
+compounded coupons).
 """
 
 from __future__ import annotations
 
 import calendar as month_lengths
-import functools
 from collections.abc import Iterable
 from dataclasses import dataclass, field
 from datetime import date, timedelta
 from fractions import Fraction
 
-import holidays
+from tests.oracle.days import Calendar, last_day, leap_days, months_on, thirty
 
 DIGITS = {"USD": 2, "EUR": 2, "GBP": 2, "JPY": 0, "KWD": 3, "CHF": 2, "AUD": 2}
-"""Decimals of the smallest unit (ISO 4217)."""
 
-ONE_DAY = timedelta(days=1)
+"""Decimals of the smallest unit (ISO 4217)."""
 
 
 def half_up(value: Fraction) -> int:
@@ -32,65 +31,11 @@ def down(value: Fraction) -> int:
     return int(value) if value >= 0 else -int(-value)
 
 
-@functools.cache
-def _closed_days(code: str) -> holidays.HolidayBase:
-    if code in holidays.list_supported_financial():
-        return holidays.financial_holidays(code, years=range(1990, 2075))
-    country, _, subdivision = code.partition("-")
-    if country == "GB":
-        subdivision = subdivision or "ENG"
-    categories = ("public", "bank") if country == "JP" else ("public",)
-    return holidays.country_holidays(country, subdiv=subdivision or None, categories=categories, years=range(1990, 2075))
-
-
-@dataclass(frozen=True)
-class Calendar:
-    """Open days of one calendar or of several joined by +; `closings` are (calendar, day, open) exceptions."""
-
-    code: str
-    closings: tuple[tuple[str, date, bool], ...] = ()
-
-    def is_open(self, day: date) -> bool:
-        return all(self._part_open(part, day) for part in self.code.split("+")) if self.code else day.weekday() < 5
-
-    def _part_open(self, part: str, day: date) -> bool:
-        for code, when, opened in self.closings:
-            if code == part and when == day:
-                return opened
-        return day.weekday() < 5 and day not in _closed_days(part)
-
-    def walk(self, day: date, count: int) -> date:
-        """The day `count` open days later (earlier when negative), counted one by one."""
-        step = ONE_DAY if count >= 0 else -ONE_DAY
-        for _ in range(abs(count)):
-            day += step
-            while not self.is_open(day):
-                day += step
-        return day
-
-    def roll(self, day: date, adjustment: str) -> date:
-        if adjustment == "unadjusted" or self.is_open(day):
-            return day
-        later, earlier = self.walk(day, 1), self.walk(day, -1)
-        if adjustment == "following":
-            return later
-        if adjustment == "preceding":
-            return earlier
-        if adjustment == "modified following":
-            return later if later.month == day.month else earlier
-        if adjustment == "modified preceding":
-            return earlier if earlier.month == day.month else later
-        assert adjustment == "nearest"
-        return later if later - day <= day - earlier else earlier
-
-    def count(self, start: date, end: date) -> int:
-        """Open days in [start, end)."""
-        return sum(self.is_open(start + timedelta(days=n)) for n in range((end - start).days))
-
-
 @dataclass
 class Bond:
-    """A bond's terms, all resolved; `written` is what bonds.csv says of it where that differs (blanks the market fills)."""
+    """A bond's terms, all resolved; `written` is what bonds.csv says of it where that differs (blanks the market
+    fills).
+    """
 
     bond: str
     description: str
@@ -139,19 +84,10 @@ class Period:
     regular: bool
 
 
-def last_day(day: date) -> bool:
-    return day.day == month_lengths.monthrange(day.year, day.month)[1]
-
-
-def months_on(day: date, months: int, to_end: bool) -> date:
-    """The same day `months` later; the last of the month when `to_end`, or where the month is too short."""
-    year, month = divmod(day.year * 12 + day.month - 1 + months, 12)
-    length = month_lengths.monthrange(year, month + 1)[1]
-    return date(year, month + 1, length if to_end else min(day.day, length))
-
-
 def grid(bond: Bond, earliest: date) -> list[date]:
-    """Regular coupon dates back to the last one at or before `earliest`, rolled back from maturity (or the last regular coupon)."""
+    """Regular coupon dates back to the last one at or before `earliest`, rolled back from maturity (or the last
+    regular coupon).
+    """
     anchor, step = bond.last_regular or bond.maturity, 12 // bond.frequency
     to_end = bond.end_of_month and last_day(anchor)
     dates, number = [anchor], 0
@@ -200,33 +136,6 @@ def _icma(bond: Bond, period: Period, start: date, end: date) -> Fraction:
     return total
 
 
-def _thirty(day_count: str, start: date, end: date, maturity: date) -> int:
-    """Days of 30-day months (ISDA 2006 4.16(f) to (h); 30/360 US with the end-of-February rule of the US market)."""
-    one, two = start.day, end.day
-    feb_start, feb_end = start.month == 2 and last_day(start), end.month == 2 and last_day(end)
-    if day_count == "30/360 US":
-        if feb_start and feb_end:
-            two = 30
-        if feb_start:
-            one = 30
-    if day_count in ("30/360", "30/360 US"):
-        if two == 31 and one >= 30:
-            two = 30
-        one = min(one, 30)
-    else:
-        if day_count == "30E/360 ISDA":
-            one = 30 if feb_start else one
-            two = 30 if feb_end and end != maturity else two
-        one, two = min(one, 30), min(two, 30)
-    return (end.year - start.year) * 360 + (end.month - start.month) * 30 + two - one
-
-
-def _leap_days(start: date, end: date) -> int:
-    """29ths of February after `start`, up to and including `end`."""
-    years = range(start.year, end.year + 1)
-    return sum(start < date(y, 2, 29) <= end for y in years if month_lengths.isleap(y))
-
-
 def fraction(bond: Bond, period: Period, start: date, end: date, day_count: str = "") -> Fraction:
     """The part of a year between two days of one coupon period, under the bond's day count or another."""
     rule, days = day_count or bond.day_count, (end - start).days
@@ -240,7 +149,7 @@ def fraction(bond: Bond, period: Period, start: date, end: date, day_count: str 
         return total
     if rule == "Act/365L":
         if bond.frequency == 1:
-            return Fraction(days, 366 if _leap_days(period.counted_from, period.counted_to) else 365)
+            return Fraction(days, 366 if leap_days(period.counted_from, period.counted_to) else 365)
         return Fraction(days, 366 if month_lengths.isleap(period.counted_to.year) else 365)
     if rule == "Act/365 Canada":
         # a whole half-year is half the coupon, also one of 181 days (market pages: always exactly c/2)
@@ -250,20 +159,20 @@ def fraction(bond: Bond, period: Period, start: date, end: date, day_count: str 
             return Fraction(days, 365)
         return Fraction(1, bond.frequency) - Fraction((period.counted_to - end).days, 365)
     if rule == "NL/365":
-        return Fraction(days - _leap_days(start, end), 365)
+        return Fraction(days - leap_days(start, end), 365)
     if rule == "Bus/252":
         return Fraction(bond.calendar.count(start, end), 252)
     if rule.startswith("30"):
-        return Fraction(_thirty(rule, start, end, bond.maturity), 360)
+        return Fraction(thirty(rule, start, end, bond.maturity), 360)
     return Fraction(days, {"Act/360": 360, "Act/365F": 365}[rule])
 
 
 def days_counted(bond: Bond, start: date, end: date, day_count: str = "") -> int:
     rule = day_count or bond.day_count
     if rule.startswith("30"):
-        return _thirty(rule, start, end, bond.maturity)
+        return thirty(rule, start, end, bond.maturity)
     if rule == "NL/365":
-        return (end - start).days - _leap_days(start, end)
+        return (end - start).days - leap_days(start, end)
     return bond.calendar.count(start, end) if rule == "Bus/252" else (end - start).days
 
 
@@ -348,6 +257,26 @@ def clean_price(bond: Bond, price: Fraction, settle: date) -> Fraction:
 
 def principal(bond: Bond, price: Fraction, settle: date, face: int) -> int:
     return half_up(face * clean_price(bond, price, settle) / 100 * factor_at(bond, settle))
+
+
+def street_yield(bond: Bond, clean: Fraction, settle: date) -> float:
+    """Yield in percent, compounding as often as the bond pays, of a bond on regular periods (by halving; ICMA rule
+    803).
+    """
+    ahead = [p for p in periods(bond) if p.end > settle]
+    first = ahead[0]
+    wait = 1 - (settle - first.start).days / (first.end - first.start).days
+    coupon = float(bond.rate) / bond.frequency
+    dirty = float(clean) + coupon * (1 - wait)
+    low, high = -50.0, 200.0
+    for _ in range(200):
+        middle = (low + high) / 2
+        grow = 1 + middle / 100 / bond.frequency
+        value = sum(coupon / grow ** (wait + n) for n in range(len(ahead))) + float(bond.redemption_price) / grow ** (
+            wait + len(ahead) - 1
+        )
+        low, high = (middle, high) if value > dirty else (low, middle)
+    return middle
 
 
 def coupon_amount(bond: Bond, period: Period, face: int) -> int:

@@ -70,7 +70,9 @@ def payments(bond: Bond) -> list[tuple[str, date, Callable[[int], int]]]:
 
 
 def expect(bonds: Iterable[Bond], positions: Positions, since: date, today: date, rng: random.Random) -> list[Due]:
-    """Every coupon and redemption with a payment date in [since, today] on a face held at the close of its record date."""
+    """Every coupon and redemption with a payment date in [since, today] on a face held at the close of its record
+    date.
+    """
     accounts: dict[str, list[str]] = {}
     for account, name in positions.all():
         accounts.setdefault(name, []).append(account)
@@ -96,7 +98,9 @@ def pay(due: Due, number: int, rng: random.Random) -> None:
     """The bank's booking, in one of the manners banks have of naming a coupon."""
     truth, word = due.truth, "COUPON" if due.truth.kind == "coupon" else "REDEMPTION"
     assert truth.amount is not None and truth.day is not None
-    entry = Entry(f"C{number:06d}", due.account, truth.currency, truth.day, truth.amount, f"{word} {due.bond.description}")
+    entry = Entry(
+        f"C{number:06d}", due.account, truth.currency, truth.day, truth.amount, f"{word} {due.bond.description}"
+    )
     manner = rng.choice(("bond", "bond", "reference", "narrative", "two entries", "bond", "lower"))
     if manner in ("bond", "two entries"):
         entry.bond = due.bond.bond

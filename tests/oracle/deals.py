@@ -1,7 +1,8 @@
-"""Invents trades and what each party tells of them: desk, broker and bank each have their own facts, true until a plant alters them.
+"""Invents trades and what each party tells of them: desk, broker and bank each have their own facts, true until a
+plant alters them.
 
-`reckon` is the one place where a trade's amounts come from, so that a faulty fact can be carried through honestly (a broker who
-accrues the wrong days also tells the wrong total).
+`reckon` is the one place where a trade's amounts come from, so that a faulty fact can be carried through honestly (a
+broker who accrues the wrong days also tells the wrong total).
 """
 
 from __future__ import annotations
@@ -12,7 +13,7 @@ from datetime import date, timedelta
 from fractions import Fraction
 from typing import Any
 
-from tests.oracle.arithmetic import DIGITS, Bond, accrued, period_at, principal
+from tests.oracle.arithmetic import DIGITS, Bond, accrued, period_at, principal, street_yield
 from tests.oracle.issues import Scene, text
 
 BROKERS = ("Tamarisk & Vane", "Orrin & Teale", "Quillon Harrow", "Dunmarrow Securities", "Ellisk Fane", "Pellgrove")
@@ -76,8 +77,12 @@ def signed(facts: dict[str, Any]) -> int:
     return -facts["side"] * facts["settlement"]
 
 
-def reckon(bond: Bond, facts: dict[str, Any], day_count: str = "", to: date | None = None, **changes: Any) -> dict[str, Any]:
-    """The facts with some changed and all amounts reckoned again; accrued under another day count or to another day if told."""
+def reckon(
+    bond: Bond, facts: dict[str, Any], day_count: str = "", to: date | None = None, **changes: Any
+) -> dict[str, Any]:
+    """The facts with some changed and all amounts reckoned again; accrued under another day count or to another day if
+    told.
+    """
     new = {**facts, **changes}
     settle = new["settlement_date"]
     new["accrued_days"], new["accrued"], _ = accrued(bond, settle, new["face"], day_count, to)
@@ -99,9 +104,24 @@ def thirty_seconds(price: Fraction) -> str:
     return f"{whole}-{ticks:02d}" + {0: "", 4: "+"}.get(rest, str(rest))
 
 
+def _yields_plainly(bond: Bond, settle: date) -> bool:
+    """Regular periods under Act/Act ICMA, no ex-dividend days, more than one coupon to come: all conventions but the
+    street's differ.
+    """
+    if bond.kind != "fixed" or bond.day_count != "Act/Act ICMA" or bond.frequency not in (1, 2) or bond.ex_dividend:
+        return False
+    return (
+        not (bond.first_coupon or bond.last_regular)
+        and (bond.maturity - settle).days > 400
+        and bond.redemption_price == 100
+    )
+
+
 def price_for(bond: Bond, rng: random.Random) -> tuple[Fraction, str]:
     if bond.quote == "32nds":
-        price = Fraction(rng.randint(92 * 32, 106 * 32), 32) + rng.choice((0, 0, Fraction(1, 64), Fraction(1, 128), Fraction(3, 128)))
+        price = Fraction(rng.randint(92 * 32, 106 * 32), 32) + rng.choice(
+            (0, 0, Fraction(1, 64), Fraction(1, 128), Fraction(3, 128))
+        )
         return price, thirty_seconds(price)
     if bond.quote == "discount":
         price = Fraction(rng.randint(300, 4800), 1000)
@@ -123,7 +143,9 @@ def face_for(bond: Bond, rng: random.Random) -> int:
 
 
 def deal(scene: Scene, bond: Bond, number: int) -> Trade | None:
-    """One trade that settles between `since` and a few days after the morning, told alike by everybody; None if it cannot be."""
+    """One trade that settles between `since` and a few days after the morning, told alike by everybody; None if it
+    cannot be.
+    """
     rng = scene.rng
     day = scene.since + timedelta(days=rng.randint(-7, (scene.today - scene.since).days))
     if not bond.calendar.is_open(day):
@@ -140,6 +162,8 @@ def deal(scene: Scene, bond: Bond, number: int) -> Trade | None:
         "broker": broker, "account": account, "broker_reference": f"{broker[:2].upper()}{number * 7 + 300000}",
         "desk_reference": f"T{number:06d}", "yield_text": "", "status": "new", "quote": bond.quote,
     })  # fmt: skip
+    if rng.random() < 0.4 and _yields_plainly(bond, settle):
+        facts["yield_text"] = f"{street_yield(bond, price, settle):.{rng.choice((3, 4, 6))}f}"
     confirmed = dict(facts)
     manner = rng.random()
     if manner < 0.35:
@@ -172,7 +196,9 @@ def pay(trade: Trade, rng: random.Random) -> None:
     """The bank's booking of a trade, in one of the manners banks have of naming what they pay."""
     facts, amount = trade.true, trade.cash
     number = facts["ticket"][1:]
-    manner = rng.choice(("ticket", "ticket", "broker", "bond", "narrative", "broker in narrative", "worded", "both", "two entries"))
+    manner = rng.choice(
+        ("ticket", "ticket", "broker", "bond", "narrative", "broker in narrative", "worded", "both", "two entries")
+    )
     word = "PURCHASE" if facts["side"] > 0 else "SALE"
     entry = Entry(f"E{number}", facts["account"], facts["currency"], facts["settlement_date"], amount,
                   narrative=f"SECURITIES {word}")  # fmt: skip
@@ -192,4 +218,8 @@ def pay(trade: Trade, rng: random.Random) -> None:
     if manner == "two entries" and abs(amount) > 1000:
         part = amount * rng.randint(20, 80) // 100
         entry.amount -= part
-        trade.bank.append(Entry(f"E{number}B", entry.account, entry.currency, entry.value_date, part, entry.narrative, entry.reference))
+        trade.bank.append(
+            Entry(
+                f"E{number}B", entry.account, entry.currency, entry.value_date, part, entry.narrative, entry.reference
+            )
+        )

@@ -1,7 +1,8 @@
 """Invents bonds of many kinds, each with its terms in full and as a clerk might leave them half blank in bonds.csv.
 
-Every kind has one short function in `KINDS`; coupon dates are laid so that many of them fall into the morning's window. Where
-a market fills the blanks, the values filled are those of the contract (UK gilts 6b) or of the market's public rules.
+Every kind has one short function in `KINDS`; coupon dates are laid so that many of them fall into the morning's
+window. Where a market fills the blanks, the values filled are those of the contract (UK gilts 6b) or of the market's
+public rules.
 """
 
 from __future__ import annotations
@@ -13,14 +14,29 @@ from fractions import Fraction
 
 from tests.oracle.arithmetic import Bond, Calendar, isin, months_on, payment_date, periods
 
-STEM = ("Marlow", "Teasel", "Ostrel", "Quarn", "Vinmoor", "Hasp", "Kelder", "Dray", "Farrow", "Lindmere", "Ombra", "Sallow")
+STEM = (
+    "Marlow",
+    "Teasel",
+    "Ostrel",
+    "Quarn",
+    "Vinmoor",
+    "Hasp",
+    "Kelder",
+    "Dray",
+    "Farrow",
+    "Lindmere",
+    "Ombra",
+    "Sallow",
+)
 TRADE = ("Gas", "Water", "Rail", "Canals", "Harbour", "Timber", "Bridges", "Glass", "Ferries", "Salt", "Power", "Mills")
 
 
 class Scene:
     """What a bond maker needs: random numbers, the morning's window, the closings, and a count for identifiers."""
 
-    def __init__(self, rng: random.Random, since: date, today: date, closings: tuple[tuple[str, date, bool], ...]) -> None:
+    def __init__(
+        self, rng: random.Random, since: date, today: date, closings: tuple[tuple[str, date, bool], ...]
+    ) -> None:
         self.rng, self.since, self.today, self.closings, self.made = rng, since, today, closings, 0
 
     def coupon_day(self) -> date:
@@ -64,7 +80,9 @@ class Scene:
 
 def _treasury(s: Scene) -> Bond:
     bond = s.plain("USD", "XSIF", 2, settlement_days=1, quote="32nds", market="US_TNOTE")
-    bond.written = dict.fromkeys(("kind", "frequency", "day_count", "quote", "payment_adjustment", "settlement_days"), "")
+    bond.written = dict.fromkeys(
+        ("kind", "frequency", "day_count", "quote", "payment_adjustment", "settlement_days"), ""
+    )
     bond.written["end_of_month"] = "no"
     return bond
 
@@ -82,9 +100,20 @@ def _month_end(s: Scene) -> Bond:
 def _bill(s: Scene) -> Bond:
     inside = s.since + timedelta(days=s.rng.randint(0, (s.today - s.since).days))
     maturity = s.rng.choice((inside, s.today + timedelta(days=s.rng.randint(20, 360))))
-    bond = s.new("USD", "XSIF", "zero", maturity, maturity - timedelta(days=364), day_count="Act/360", settlement_days=1,
-                 quote="discount", market="US_TBILL")  # fmt: skip
-    bond.written = dict.fromkeys(s.rng.sample(("currency", "day_count", "quote", "settlement_days", "frequency"), 3), "")
+    bond = s.new(
+        "USD",
+        "XSIF",
+        "zero",
+        maturity,
+        maturity - timedelta(days=364),
+        day_count="Act/360",
+        settlement_days=1,
+        quote="discount",
+        market="US_TBILL",
+    )
+    bond.written = dict.fromkeys(
+        s.rng.sample(("currency", "day_count", "quote", "settlement_days", "frequency"), 3), ""
+    )
     return bond
 
 
@@ -98,18 +127,30 @@ def _bund(s: Scene) -> Bond:
 
 def _gilt(s: Scene) -> Bond:
     bond = s.plain("GBP", "GB", 2, settlement_days=1, ex_dividend="6b", record="7b", market="UK_GILT")
-    bond.written = dict.fromkeys(s.rng.sample(("day_count", "calendar", "ex_dividend", "settlement_days", "currency"), 3), "")
+    bond.written = dict.fromkeys(
+        s.rng.sample(("day_count", "calendar", "ex_dividend", "settlement_days", "currency"), 3), ""
+    )
     return bond
 
 
 def _floater(s: Scene, currency: str, calendar: str, day_count: str) -> Bond:
     adjustment = s.rng.choice(("modified following", "following"))
-    bond = s.plain(currency, calendar, 4, kind="floating", rate=Fraction(0), day_count=day_count, adjusted=True,
-                   payment_adjustment=adjustment)  # fmt: skip
+    bond = s.plain(
+        currency,
+        calendar,
+        4,
+        kind="floating",
+        rate=Fraction(0),
+        day_count=day_count,
+        adjusted=True,
+        payment_adjustment=adjustment,
+    )
     bond.accrual_start = bond.calendar.roll(bond.accrual_start, "following")
     while payment_date(bond, bond.maturity) != bond.maturity:
         bond.maturity += timedelta(days=1)
-    bond.accrual_start = bond.calendar.roll(months_on(bond.maturity, -12 * (bond.maturity.year - s.today.year + 2), False), "following")
+    bond.accrual_start = bond.calendar.roll(
+        months_on(bond.maturity, -12 * (bond.maturity.year - s.today.year + 2), False), "following"
+    )
     first = [p for p in periods(bond) if (p.end - p.start).days > 45]
     bond.first_coupon = first[0].end
     return s.steps(bond, lambda n: Fraction(s.rng.randint(1_00000, 5_00000), 100000))
@@ -119,17 +160,29 @@ def _company(s: Scene) -> Bond:
     """Its market says how it settles: T+2 until 27 May 2024, T+1 from the 28th."""
     bond = s.plain("USD", "XFED", 2, day_count="30/360", settlement_days=1, market="US_CORP")
     bond.old_cycle = (date(2024, 5, 28), 2)
-    bond.written = dict.fromkeys(("day_count", "settlement_days", "currency", "payment_adjustment", "quote", "redemption_price"), "")
+    bond.written = dict.fromkeys(
+        ("day_count", "settlement_days", "currency", "payment_adjustment", "quote", "redemption_price"), ""
+    )
     return bond
 
 
 def _month_end_floater(s: Scene) -> Bond:
-    """Coupon dates on month ends, moved back into the month where it ends on a weekend, and interest moved with them."""
+    """Coupon dates on month ends, moved back into a month that ends on a weekend, and interest with them."""
     last = date(s.today.year, s.today.month, 1) - timedelta(days=1)
     maturity = months_on(last, 12 * s.rng.randint(2, 8), True)
     issued = months_on(maturity, -12 * (maturity.year - s.today.year + 2), True)
-    bond = s.new("EUR", "XECB", "floating", maturity, issued, frequency=4, day_count="Act/360", adjusted=True, end_of_month=True,
-                 payment_adjustment="modified following")  # fmt: skip
+    bond = s.new(
+        "EUR",
+        "XECB",
+        "floating",
+        maturity,
+        issued,
+        frequency=4,
+        day_count="Act/360",
+        adjusted=True,
+        end_of_month=True,
+        payment_adjustment="modified following",
+    )
     bond.first_coupon = next(p.end for p in periods(bond) if (p.end - p.start).days > 45)
     s.steps(bond, lambda n: Fraction(s.rng.randint(1_00000, 5_00000), 100000))
     if s.rng.random() < 0.5:
@@ -163,10 +216,18 @@ def _odd_last(s: Scene, frequency: int, day_count: str) -> Bond:
 
 
 def _amortising(s: Scene) -> Bond:
-    bond = s.plain("EUR", "XECB", s.rng.choice((2, 4)), kind="amortising", day_count=s.rng.choice(("30E/360", "Act/Act ICMA")))
+    bond = s.plain(
+        "EUR", "XECB", s.rng.choice((2, 4)), kind="amortising", day_count=s.rng.choice(("30E/360", "Act/Act ICMA"))
+    )
     total = len(periods(bond))
-    return s.steps(bond, lambda n: Fraction(total - n, total).limit_denominator(1) if n == 0 else Fraction(
-        round(10**8 * (total - n) / total), 10**8))  # fmt: skip
+    return s.steps(
+        bond,
+        lambda n: (
+            Fraction(total - n, total).limit_denominator(1)
+            if n == 0
+            else Fraction(round(10**8 * (total - n) / total), 10**8)
+        ),
+    )
 
 
 def _linked(s: Scene) -> Bond:
@@ -189,7 +250,9 @@ def _zero(s: Scene, currency: str, calendar: str, years: int, days: int) -> Bond
     maturity = s.years_on(s.coupon_day(), max(years - 2, 1), years) if years else s.coupon_day()
     if maturity < s.since:
         maturity = s.today
-    return s.new(currency, calendar, "zero", maturity, date(2019, 5, 14), day_count="Act/Act ICMA", settlement_days=days)
+    return s.new(
+        currency, calendar, "zero", maturity, date(2019, 5, 14), day_count="Act/Act ICMA", settlement_days=days
+    )
 
 
 def _maturing(s: Scene, currency: str, calendar: str, frequency: int, **terms: object) -> Bond:
@@ -200,7 +263,9 @@ def _maturing(s: Scene, currency: str, calendar: str, frequency: int, **terms: o
 
 
 def _any_adjustment(s: Scene) -> Bond:
-    adjustment = s.rng.choice(("unadjusted", "following", "modified following", "preceding", "modified preceding", "nearest"))
+    adjustment = s.rng.choice(
+        ("unadjusted", "following", "modified following", "preceding", "modified preceding", "nearest")
+    )
     calendar = s.rng.choice(("XECB", "XSIF+XECB", "XLON", "GB", "GB-ENG", "JP"))
     return s.plain("EUR", calendar, s.rng.choice((1, 2)), payment_adjustment=adjustment)
 
@@ -257,7 +322,7 @@ KINDS: dict[str, Callable[[Scene], Bond]] = {
     "any adjustment": _any_adjustment,
     "two calendars": lambda s: s.plain("EUR", "XSIF+XECB", 2, settlement_days=s.rng.choice((2, 3))),
     "no cycle": lambda s: s.plain("EUR", "XECB", 1, settlement_days=None),
-}  # fmt: skip
+}
 
 
 def text(number: Fraction | int | None) -> str:
@@ -271,18 +336,32 @@ def text(number: Fraction | int | None) -> str:
 
 def row(bond: Bond) -> dict[str, str]:
     """The bond as a row of bonds.csv."""
+
     def day(value: date | None) -> str:
         return value.isoformat() if value else ""
 
     told = {
-        "bond": bond.bond, "description": bond.description, "market": bond.market, "currency": bond.currency, "kind": bond.kind,
-        "coupon_rate": text(bond.rate) if bond.kind not in ("zero", "floating") else "", "frequency": str(bond.frequency),
-        "day_count": bond.day_count, "accrual_start": day(bond.accrual_start), "first_coupon": day(bond.first_coupon),
-        "last_regular_coupon": day(bond.last_regular), "maturity": day(bond.maturity),
-        "end_of_month": "yes" if bond.end_of_month else "no", "payment_adjustment": bond.payment_adjustment,
-        "accrual_adjustment": "adjusted" if bond.adjusted else "unadjusted", "calendar": bond.calendar.code,
-        "settlement_days": "" if bond.settlement_days is None else str(bond.settlement_days), "ex_dividend": bond.ex_dividend,
-        "record": bond.record, "quote": bond.quote, "redemption_price": text(bond.redemption_price),
+        "bond": bond.bond,
+        "description": bond.description,
+        "market": bond.market,
+        "currency": bond.currency,
+        "kind": bond.kind,
+        "coupon_rate": text(bond.rate) if bond.kind not in ("zero", "floating") else "",
+        "frequency": str(bond.frequency),
+        "day_count": bond.day_count,
+        "accrual_start": day(bond.accrual_start),
+        "first_coupon": day(bond.first_coupon),
+        "last_regular_coupon": day(bond.last_regular),
+        "maturity": day(bond.maturity),
+        "end_of_month": "yes" if bond.end_of_month else "no",
+        "payment_adjustment": bond.payment_adjustment,
+        "accrual_adjustment": "adjusted" if bond.adjusted else "unadjusted",
+        "calendar": bond.calendar.code,
+        "settlement_days": "" if bond.settlement_days is None else str(bond.settlement_days),
+        "ex_dividend": bond.ex_dividend,
+        "record": bond.record,
+        "quote": bond.quote,
+        "redemption_price": text(bond.redemption_price),
         "accrued_rounding": bond.accrued_rounding,
-    }  # fmt: skip
+    }
     return {**told, **bond.written}

@@ -1,7 +1,9 @@
-"""Ways of going wrong, one short function each: what a desk, a broker or a bank would then tell, and which break must be found.
+"""Ways of going wrong, one short function each: what a desk, a broker or a bank would then tell, and which break must
+be found.
 
-A function gets one trade (or one coupon) told truly and alters what was told; it returns the breaks that must be found on the item,
-as (break, party), or None where the fault cannot happen to it. Further breaks that follow from the same fault are allowed.
+A function gets one trade (or one coupon) told truly and alters what was told; it returns the breaks that must be found
+on the item, as (break, party), or None where the fault cannot happen to it. Further breaks that follow from the same
+fault are allowed.
 """
 
 from __future__ import annotations
@@ -13,16 +15,30 @@ from fractions import Fraction
 from typing import Any
 
 from tests.oracle.arithmetic import DIGITS, Calendar
+from tests.oracle.bank_plants import (
+    bank_account,
+    bank_amount,
+    bank_currency,
+    bank_late,
+    bank_missing,
+    bank_sign,
+)
 from tests.oracle.deals import ACCOUNTS, BROKERS, Trade, reckon
 from tests.oracle.issues import text
 
 Must = set[tuple[str, str]] | None
+
 TradePlant = Callable[[Trade, random.Random], Must]
+
+YIELD_TELLERS = ("Orrin & Teale", "Pellgrove")
+
+"""Brokers whose files have a column for the yield."""
+
 OTHER_COUNTS = ("30/360", "Act/360", "Act/365F", "30E/360", "NL/365")
 
 
 def slip(number: int, rng: random.Random) -> int:
-    """A typing slip: two digits exchanged, one changed, one dropped or one doubled. Never within a few smallest units."""
+    """A typing slip: two digits exchanged, one changed, dropped or doubled; never within a few smallest units."""
     digits = str(abs(number))
     for _ in range(60):
         place = rng.randrange(len(digits))
@@ -56,7 +72,11 @@ def _put(trade: Trade, party: str, facts: dict[str, Any]) -> None:
 
 def _again(trade: Trade, facts: dict[str, Any], **changes: Any) -> dict[str, Any]:
     """Told facts reckoned again, with what the party leaves untold still untold."""
-    new = reckon(trade.bond, {**trade.true, **{k: facts[k] for k in ("status", "account", "broker_reference", "desk_reference")}}, **changes)
+    new = reckon(
+        trade.bond,
+        {**trade.true, **{k: facts[k] for k in ("status", "account", "broker_reference", "desk_reference")}},
+        **changes,
+    )
     for name in ("accrued", "settlement"):
         if facts[name] is None:
             new[name] = None
@@ -77,7 +97,12 @@ def amount_slip(party: str) -> TradePlant:
 def wrong_day_count(party: str) -> TradePlant:
     def plant(trade: Trade, rng: random.Random) -> Must:
         facts = trade.broker if party == "Broker" else trade.desk
-        if not facts or trade.bond.kind == "zero" or None in (facts["accrued"], facts["settlement"]) or trade.true["accrued"] <= 0:
+        if (
+            not facts
+            or trade.bond.kind == "zero"
+            or None in (facts["accrued"], facts["settlement"])
+            or trade.true["accrued"] <= 0
+        ):
             return None
         new = _again(trade, facts, day_count=rng.choice(OTHER_COUNTS))
         if abs(new["accrued"] - trade.true["accrued"]) < 5:
@@ -139,8 +164,14 @@ def wrong_price(party: str, carried: bool) -> TradePlant:
         facts = _told(trade, party)
         if not facts or trade.bond.quote == "32nds" or facts["settlement"] is None:
             return None
-        price = trade.true["price"] + Fraction(rng.choice((-9, -5, -1, 1, 5, 9)), 8 if trade.bond.quote == "price" else 100)
-        new = _again(trade, facts, price=price, price_text=text(price)) if carried else {**facts, "price": price, "price_text": text(price)}
+        price = trade.true["price"] + Fraction(
+            rng.choice((-9, -5, -1, 1, 5, 9)), 8 if trade.bond.quote == "price" else 100
+        )
+        new = (
+            _again(trade, facts, price=price, price_text=text(price))
+            if carried
+            else {**facts, "price": price, "price_text": text(price)}
+        )
         if carried and abs(new["settlement"] - trade.true["settlement"]) < 5:
             return None
         _put(trade, party, new)
@@ -227,6 +258,14 @@ def wrong_trade_date(trade: Trade, rng: random.Random) -> Must:
     return {("trade date", "Broker")}
 
 
+def wrong_yield(trade: Trade, rng: random.Random) -> Must:
+    if not trade.broker or not trade.true["yield_text"] or trade.true["broker"] not in YIELD_TELLERS:
+        return None
+    told = Fraction(trade.true["yield_text"]) + rng.choice((Fraction(1, 4), Fraction(-1, 8), Fraction(11, 100)))
+    trade.broker["yield_text"] = f"{float(told):.3f}"
+    return {("yield", "Broker")}
+
+
 def unconfirmed(trade: Trade, rng: random.Random) -> Must:
     trade.broker = None
     return {("no confirmation", "Broker")}
@@ -269,6 +308,7 @@ def confirmed_twice(same_reference: bool) -> TradePlant:
 
 def rejected_confirmation(column: str, spoil: Callable[[str], str]) -> TradePlant:
     """A confirmation whose row cannot be read leaves its ticket unconfirmed."""
+
     def plant(trade: Trade, rng: random.Random) -> Must:
         assert trade.broker
         trade.broker["spoilt"] = (column, spoil)
@@ -279,6 +319,7 @@ def rejected_confirmation(column: str, spoil: Callable[[str], str]) -> TradePlan
 
 def one_unit_off(party: str) -> TradePlant:
     """No break: one smallest unit is within tolerance."""
+
     def plant(trade: Trade, rng: random.Random) -> Must:
         facts = trade.broker if party == "Broker" else trade.desk
         if not facts or trade.truth.state == "due" or not trade.paid or facts["settlement"] is None:
@@ -288,53 +329,6 @@ def one_unit_off(party: str) -> TradePlant:
         return set()
 
     return plant
-
-
-def bank_amount(trade: Trade, rng: random.Random) -> Must:
-    if not trade.bank:
-        return None
-    entry = trade.bank[0]
-    change = rng.choice((-2500, 2500, -15, entry.amount // 10)) or 77
-    entry.amount += change if abs(change) > 5 else 77
-    return {("settlement amount", "Bank")}
-
-
-def bank_late(trade: Trade, rng: random.Random) -> Must:
-    if len(trade.bank) != 1 or not trade.overdue:
-        return None
-    trade.bank[0].value_date += timedelta(days=rng.choice((1, 2, 3)))
-    return {("settlement date", "Bank")}
-
-
-def bank_missing(trade: Trade, rng: random.Random) -> Must:
-    if not trade.bank or not trade.overdue:
-        return None
-    trade.bank = []
-    trade.truth.plant = "no cash"
-    return {("no cash", "Bank")}
-
-
-def bank_currency(trade: Trade, rng: random.Random) -> Must:
-    other = {"USD": "EUR", "EUR": "GBP", "GBP": "EUR"}.get(trade.bond.currency)
-    if len(trade.bank) != 1 or not other or not trade.bank[0].reference:
-        return None
-    trade.bank[0].currency = other
-    return {("currency", "Bank")}
-
-
-def bank_account(trade: Trade, rng: random.Random) -> Must:
-    if len(trade.bank) != 1 or not trade.bank[0].reference:
-        return None
-    trade.bank[0].account = rng.choice([name for name in ACCOUNTS if name != trade.true["account"]])
-    return {("account", "Bank")}
-
-
-def bank_sign(trade: Trade, rng: random.Random) -> Must:
-    """Booked the wrong way round, though the reference names the trade."""
-    if len(trade.bank) != 1 or not trade.bank[0].reference:
-        return None
-    trade.bank[0].amount = -trade.bank[0].amount
-    return {("settlement amount", "Bank")}
 
 
 def desk_told_twice_reference(trade: Trade) -> dict[str, Any]:
@@ -374,6 +368,7 @@ TRADE_PLANTS: dict[str, TradePlant] = {
     "desk's currency": wrong_currency("Desk"),
     "broker's account": other_account,
     "broker's trade date": wrong_trade_date,
+    "broker's yield": wrong_yield,
     "unconfirmed": unconfirmed,
     "confirmed without ticket": without_ticket,
     "cancelled but confirmed": cancelled_but_confirmed,
@@ -392,6 +387,5 @@ TRADE_PLANTS: dict[str, TradePlant] = {
     "bank's account": bank_account,
     "bank's sign": bank_sign,
 }
-
 
 __all__ = ["TRADE_PLANTS", "Must", "desk_told_twice_reference", "other_broker", "slip"]

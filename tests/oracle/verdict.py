@@ -1,4 +1,6 @@
-"""Holds what the program wrote against the truth of an invented morning: amounts, dates, states, breaks found, no false ones."""
+"""Holds what the program wrote against the truth of an invented morning: amounts, dates, states, breaks found, no
+false ones.
+"""
 
 from __future__ import annotations
 
@@ -20,7 +22,9 @@ def rows_of(path: Path) -> list[dict[str, str]]:
 
 @dataclass
 class Verdict:
-    """Complaints by kind; `further` are breaks beyond the planted ones on items that carry a plant, for a person to look at."""
+    """Complaints by kind; `further` are breaks beyond the planted ones on items that carry a plant, for a person to
+    look at.
+    """
 
     complaints: list[str] = field(default_factory=list)
     further: Counter[tuple[str, str, str]] = field(default_factory=Counter)
@@ -114,7 +118,9 @@ def _totals(out: Path, written: dict[str, Written], verdict: Verdict) -> None:
         read[line["file"]] += rows[0]
         expected = written[line["file"]].used.get(line["currency"]) if line["file"] in written else None
         if expected is not None and sums[1] != Decimal(money(expected, line["currency"])):
-            verdict.say(f"totals of {line['file']} {line['currency']}: used {sums[1]} not {money(expected, line['currency'])}")
+            verdict.say(
+                f"totals of {line['file']} {line['currency']}: used {sums[1]} not {money(expected, line['currency'])}"
+            )
     for file, told in written.items():
         if read[file] != told.rows:
             verdict.say(f"totals of {file}: read {read[file]} rows not {told.rows}")

@@ -1,4 +1,6 @@
-"""Writes the morning folder: our own files plainly, confirmations in six brokers' manners, three of them with a layout file."""
+"""Writes the morning folder: our own files plainly, confirmations in six brokers' manners, three of them with a layout
+file.
+"""
 
 from __future__ import annotations
 
@@ -14,9 +16,26 @@ from typing import Any
 
 from tests.oracle.arithmetic import DIGITS
 from tests.oracle.issues import text
+from tests.oracle.manners import Manner
 
-TICKET_COLUMNS = ("ticket", "trade_date", "settlement_date", "bond", "side", "face", "price", "accrued", "fees", "settlement_amount",
-                  "currency", "broker", "account", "broker_reference", "yield", "status")  # fmt: skip
+TICKET_COLUMNS = (
+    "ticket",
+    "trade_date",
+    "settlement_date",
+    "bond",
+    "side",
+    "face",
+    "price",
+    "accrued",
+    "fees",
+    "settlement_amount",
+    "currency",
+    "broker",
+    "account",
+    "broker_reference",
+    "yield",
+    "status",
+)
 
 
 def money(minor: int | None, currency: str) -> str:
@@ -44,129 +63,11 @@ def number_style(plain: str, thousands: str, point: str, negative: str) -> str:
     return negative.replace("n", styled) if minus else styled
 
 
-@dataclass(frozen=True)
-class Manner:
-    """How one broker writes its confirmations."""
-
-    broker: str
-    stem: str
-    headings: dict[str, str]
-    delimiter: str = ","
-    encoding: str = "utf-8"
-    thousands: str = ""
-    point: str = "."
-    negative: str = "-n"
-    day: str = "%Y-%m-%d"
-    sides: tuple[str, str] = ("buy", "sell")
-    """Words for our purchase and our sale, already as this broker speaks of them."""
-    statuses: dict[str, str] = field(default_factory=lambda: {"new": "new", "amended": "amended", "cancelled": "cancelled", "": ""})
-    face_scale: int = 1
-    titles: tuple[str, ...] = ()
-    footer: str = ""
-    thirty_seconds: bool = True
-    layout: str = ""
-    parts: int = 1
-
-
-GERMAN = {
-    "broker_reference": "Geschäftsnr", "desk_reference": "Kundenref", "bond": "Wertpapier", "side": "K/V",
-    "trade_date": "Handelstag", "settlement_date": "Valuta", "face": "Nennwert", "price": "Kurs", "accrued_days": "Tage",
-    "accrued": "Stückzinsen", "fees": "Gebühren", "settlement": "Endbetrag", "currency": "Währung", "account": "Depot",
-    "status": "Stand",
-}  # fmt: skip
-MANNERS = (
-    Manner("Tamarisk & Vane", "tamarisk_vane", GERMAN, ";", "cp1252", ".", ",", "-n", "%d.%m.%Y", ("V", "K"),
-           {"new": "Neu", "amended": "Geändert", "cancelled": "Storno", "": ""}, thirty_seconds=False, footer="TOTAL;{rows} Zeilen", layout="""
-broker = "Tamarisk & Vane"
-file = "tamarisk*.csv"
-encoding = "cp1252"
-delimiter = ";"
-decimal = ","
-date = "%d.%m.%Y"
-side_told_by = "broker"
-footer = "^(TOTAL|TRAILER)"
-[columns]
-broker_reference = "Geschäftsnr"
-desk_reference = "Kundenref"
-bond = "Wertpapier"
-side = "K/V"
-trade_date = "Handelstag"
-settlement_date = "Valuta"
-face = "Nennwert"
-price = "Kurs"
-accrued_days = "Tage"
-accrued = "Stückzinsen"
-fees = "Gebühren"
-settlement_amount = "Endbetrag"
-currency = "Währung"
-account = "Depot"
-status = "Stand"
-[values.side]
-K = "buy"
-V = "sell"
-[values.status]
-Neu = "new"
-"Geändert" = "amended"
-Storno = "cancelled"
-"""),
-    Manner("Orrin & Teale", "orrin_teale", {
-        "broker_reference": "Broker Ref", "desk_reference": "Client Ref", "bond": "ISIN", "side": "B/S", "trade_date": "Trade Date",
-        "settlement_date": "Settlement Date", "face": "Face Amount", "price": "Price", "accrued_days": "Days Accrued",
-        "accrued": "Accrued Interest", "fees": "Commission", "settlement": "Net Amount", "currency": "Ccy", "account": "Account",
-        "status": "Status"}, sides=("Buy", "Sell"), parts=2),
-    Manner("Quillon Harrow", "quillon_harrow", {
-        "broker_reference": "Broker Reference", "desk_reference": "Desk Reference", "bond": "ISIN Code", "side": "Side",
-        "face": "Nominal", "price": "Clean Price", "accrued": "Accrued Int", "fees": "Fees", "settlement": "Settlement Amount",
-        "currency": "Currency", "trade_date": "Trade Date", "settlement_date": "Settle Date", "account": "Account",
-        "status": "Status"}, "\t", thousands=",", negative="(n)", day="%d-%b-%Y", sides=("BUY", "SELL"),
-        titles=("Quillon Harrow - confirmations of the day", "prepared overnight"), footer="TOTAL\t{rows}"),
-    Manner("Dunmarrow Securities", "dunmarrow_securities", {
-        "settlement": "Total", "fees": "Charges", "accrued": "Interest", "accrued_days": "Int Days", "price": "Px",
-        "face": "Par (000s)", "side": "D/R", "bond": "Security", "settlement_date": "SD", "trade_date": "TD",
-        "broker_reference": "Our Ref", "desk_reference": "Your Ref", "currency": "Cur", "account": "A/C", "status": "Action"},
-        "|", "utf-8-sig", day="%Y%m%d", sides=("R", "D"), face_scale=1000, layout="""
-broker = "Dunmarrow Securities"
-file = "dunmarrow*.csv"
-delimiter = "|"
-date = "%Y%m%d"
-[columns]
-settlement_amount = "Total"
-fees = "Charges"
-accrued = "Interest"
-accrued_days = "Int Days"
-price = "Px"
-face = "Par (000s)"
-side = "D/R"
-bond = "Security"
-settlement_date = "SD"
-trade_date = "TD"
-broker_reference = "Our Ref"
-desk_reference = "Your Ref"
-currency = "Cur"
-account = "A/C"
-status = "Action"
-[values.side]
-R = "buy"
-D = "sell"
-[scale]
-face = 1000
-"""),
-    Manner("Ellisk Fane", "ellisk_fane", {
-        "broker_reference": "Broker Ref", "desk_reference": "Client Ref", "trade_date": "Trade Date", "settlement_date": "Settlement Date",
-        "bond": "ISIN", "side": "Buy/Sell", "face": "Par Value", "price": "Price", "accrued": "Accrued Interest", "fees": "Charges",
-        "settlement": "Settlement Amount", "currency": "Currency", "account": "Account", "status": "Status"},
-        encoding="utf-16", thousands="'", negative="n-", day="%d/%m/%Y", sides=("B", "S")),
-    Manner("Pellgrove", "pellgrove", {
-        "broker_reference": "broker_reference", "desk_reference": "desk_reference", "trade_date": "trade_date",
-        "settlement_date": "settlement_date", "bond": "bond", "side": "side", "face": "face", "price": "price",
-        "accrued_days": "accrued_days", "accrued": "accrued", "fees": "fees", "settlement": "settlement_amount",
-        "currency": "currency", "account": "account", "status": "status"}, thousands=",", day="%d-%b-%y", parts=2),
-)  # fmt: skip
-
-
 @dataclass
 class Written:
-    """What was written of one file: rows, lines of rows that must be rejected, and money by currency that must be used."""
+    """What was written of one file: rows, lines of rows that must be rejected, and money by currency that must be
+    used.
+    """
 
     rows: int = 0
     rejected: list[int] = field(default_factory=list)
@@ -183,13 +84,23 @@ def plain_file(path: Path, columns: Sequence[str], rows: Iterable[dict[str, str]
 def ticket_row(facts: dict[str, Any]) -> dict[str, str]:
     currency = facts["currency"]
     told = {
-        "ticket": facts["ticket"], "trade_date": facts["trade_date"].isoformat(), "settlement_date": facts["settlement_date"].isoformat(),
-        "bond": facts["bond"], "side": "buy" if facts["side"] > 0 else "sell", "face": money(facts["face"], currency),
-        "price": facts["price_text"], "accrued": money(facts["accrued"], currency), "fees": money(facts["fees"], currency),
-        "settlement_amount": money(facts["settlement"], currency), "currency": currency, "broker": facts["broker"],
-        "account": facts["account"], "broker_reference": facts["broker_reference"], "yield": facts["yield_text"],
+        "ticket": facts["ticket"],
+        "trade_date": facts["trade_date"].isoformat(),
+        "settlement_date": facts["settlement_date"].isoformat(),
+        "bond": facts["bond"],
+        "side": "buy" if facts["side"] > 0 else "sell",
+        "face": money(facts["face"], currency),
+        "price": facts["price_text"],
+        "accrued": money(facts["accrued"], currency),
+        "fees": money(facts["fees"], currency),
+        "settlement_amount": money(facts["settlement"], currency),
+        "currency": currency,
+        "broker": facts["broker"],
+        "account": facts["account"],
+        "broker_reference": facts["broker_reference"],
+        "yield": facts["yield_text"],
         "status": facts["status"],
-    }  # fmt: skip
+    }
     if "spoilt" in facts:
         column, spoil = facts["spoilt"]
         told[column] = spoil(told[column])
@@ -215,14 +126,23 @@ def confirmation_row(facts: dict[str, Any], manner: Manner, day_style: str) -> d
 
     face = Fraction(facts["face"], 10 ** DIGITS[currency] * manner.face_scale)
     told = {
-        "broker_reference": facts["broker_reference"], "desk_reference": facts["desk_reference"],
-        "trade_date": facts["trade_date"].strftime(day_style), "settlement_date": facts["settlement_date"].strftime(day_style),
-        "bond": facts["bond"], "side": manner.sides[0 if facts["side"] > 0 else 1],
-        "face": number_style(text(face), manner.thousands, manner.point, manner.negative), "price": _price(facts, manner),
-        "accrued_days": str(facts["accrued_days"]), "accrued": amount(facts["accrued"]), "fees": amount(facts["fees"]),
-        "settlement": amount(facts["settlement"]), "currency": currency, "account": facts["account"],
+        "broker_reference": facts["broker_reference"],
+        "desk_reference": facts["desk_reference"],
+        "trade_date": facts["trade_date"].strftime(day_style),
+        "settlement_date": facts["settlement_date"].strftime(day_style),
+        "bond": facts["bond"],
+        "side": manner.sides[0 if facts["side"] > 0 else 1],
+        "face": number_style(text(face), manner.thousands, manner.point, manner.negative),
+        "price": _price(facts, manner),
+        "accrued_days": str(facts["accrued_days"]),
+        "accrued": amount(facts["accrued"]),
+        "fees": amount(facts["fees"]),
+        "settlement": amount(facts["settlement"]),
+        "currency": currency,
+        "account": facts["account"],
+        "yield": facts["yield_text"],
         "status": manner.statuses[facts["status"]],
-    }  # fmt: skip
+    }
     if "spoilt" in facts:
         column, spoil = facts["spoilt"]
         told[column] = spoil(told[column])
