@@ -62,6 +62,11 @@ def _break_rank(name: str) -> Any:
     return rank
 
 
+def _stake_rank(data: Payments) -> np.ndarray:
+    # amounts of different currencies cannot be compared as they stand; the morning's ranking has done it in one currency
+    return -gather(np.asarray(data.breaks["rank"], np.int64), data.first, 0)
+
+
 COLUMNS: tuple[Column, ...] = (
     Column("payment", "Payment", "What is paid; below it ticket, date and counterparty", payment_cells, _payment_rank, 310,
            stretch=3),
@@ -77,8 +82,8 @@ COLUMNS: tuple[Column, ...] = (
            stretch=2),
     Column("overdue", "Overdue", "Business days since the payment was due", overdue_cells, _break_rank("overdue_days"), 60,
            right=True, descending_first=True),
-    Column("stake", "At stake", "What can be lost on this payment while the break is open", stake_cells,
-           lambda d: _scaled(d, gather(d.breaks["stake_minor"], d.first)), 80, right=True, descending_first=True),
+    Column("stake", "At stake", "What can be lost while the break is open; sorted by its worth in one currency", stake_cells,
+           _stake_rank, 80, right=True, descending_first=True),
 )  # fmt: skip
 
 QUIET_COLUMNS: tuple[Column, ...] = (
