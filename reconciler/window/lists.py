@@ -120,31 +120,34 @@ def _facets(table: Table, names: Sequence[tuple[str, str]]) -> list[Facet]:
 # --- bonds -------------------------------------------------------------------------------------------------------------------
 
 BOND_COLUMNS: tuple[Column, ...] = (
-    text_column("description", "Bond", "The bond's description", 220, stretch=3, strong=True),
-    text_column("bond", "Identifier", "ISIN, CUSIP, SEDOL or the desk's own code", 130),
-    text_column("currency", "Currency", "The currency it pays in", 78),
-    text_column("kind", "Kind", "Zero, fixed, stepped, floating, linked or amortising", 92),
-    decimal_column("coupon_rate_e9", "Coupon %", "Percent a year", 9, 88),
-    count_column("frequency", "A year", "Coupons a year", 66),
-    text_column("day_count", "Day count", "How days of accrued interest are counted", 120),
-    date_column("maturity", "Maturity", "The day the face is paid back", 108),
-    text_column("calendar", "Calendar", "Whose closing days move its payments", 96, stretch=1),
-    text_column("market", "Market", "The market whose conventions fill in what is blank", 120, stretch=1),
+    text_column("description", "Bond", "The bond's description", 210, stretch=3, strong=True),
+    text_column("bond", "Identifier", "ISIN, CUSIP, SEDOL or the desk's own code", 124),
+    text_column("currency", "Currency", "The currency it pays in", 72),
+    text_column("kind", "Kind", "Zero, fixed, stepped, floating, linked or amortising", 82),
+    decimal_column("coupon_rate_e9", "Coupon %", "Percent a year; of floating bonds the rate before the first fixing", 9, 76),
+    count_column("frequency", "A year", "Coupons a year", 58),
+    text_column("day_count", "Day count", "How days of accrued interest are counted", 112),
+    date_column("maturity", "Maturity", "The day the face is paid back", 96),
+    text_column("payment_adjustment", "Moved", "Where a payment goes that falls on a closed day", 120, stretch=1),
+    text_column("calendar", "Calendar", "Whose closed days move its payments; blank: weekends only", 88, stretch=1),
+    text_column("ex_dividend", "Ex", "Ex-dividend this many business (b) or calendar (c) days before the coupon", 48),
+    text_column("record", "Record", "Record date this many days before the coupon", 62),
+    text_column("terms", "Terms", "Whether the bond can be reckoned", 76),
 )
 
 BOND_FACTS = [
     ("bond", "bond", "text"), ("description", "description", "text"), ("market", "market", "text"),
     ("currency", "currency", "text"), ("kind", "kind", "text"), ("frequency", "frequency", "count"),
     ("day_count", "day count", "text"), ("accrual_start", "accrual start", "date"), ("first_coupon", "first coupon", "date"),
-    ("last_regular_coupon", "last regular coupon", "date"), ("maturity", "maturity", "date"),
-    ("calendar", "calendar", "text"), ("ex_dividend", "ex-dividend", "text"), ("record", "record", "text"),
-    ("quote", "quote", "text"),
+    ("maturity", "maturity", "date"), ("payment_adjustment", "payment adjustment", "text"), ("calendar", "calendar", "text"),
+    ("ex_dividend", "ex-dividend", "text"), ("record", "record", "text"), ("quote", "quote", "text"), ("terms", "terms", "text"),
 ]  # fmt: skip
 
 
 def bonds_sheet(bonds: Table) -> Sheet:
-    """The list of the morning's bonds."""
-    facets = _facets(bonds, [("currency", "Currency"), ("kind", "Kind"), ("day_count", "Day count"), ("market", "Market")])
+    """The list of the morning's bonds (procedures.bondlist.BONDLIST)."""
+    facets = _facets(bonds, [("currency", "Currency"), ("kind", "Kind"), ("day_count", "Day count"), ("calendar", "Calendar"),
+                             ("market", "Market"), ("terms", "Terms")])  # fmt: skip
     return Sheet(Records(bonds), len(bonds), BOND_COLUMNS, facts_of(bonds, BOND_FACTS), index_of(bonds), facets)
 
 

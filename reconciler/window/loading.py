@@ -48,6 +48,7 @@ def load(folder: Path, date: datetime.date, progress: Progress) -> Loaded:
 
 def arrange(folder: Path | None, day: Any, coming: Any) -> Loaded:
     """The lists of a day (procedures.morning.Day) and of what lies ahead (procedures.ahead.Ahead)."""
+    from reconciler.procedures.bondlist import bondlist
     from reconciler.procedures.overview import digits_of, overview
 
     seen = overview(day)
@@ -56,7 +57,7 @@ def arrange(folder: Path | None, day: Any, coming: Any) -> Loaded:
         "breaks": payments_sheet(day, seen, ("break",)),
         "due": payments_sheet(day, seen, ("due",)),
         "agreed": payments_sheet(day, seen, ("agrees", "within tolerance")),
-        "bonds": bonds_sheet(day.source.bonds),
+        "bonds": bonds_sheet(bondlist(day)),
         "files": files_sheet(day.source.totals, digits_of(day.source.totals["currency"])),
         "rejects": rejects_sheet(day.source.rejects),
         "ahead": ahead_sheet(coming.payments, coming.digits, year, day.source.bonds),

@@ -15,6 +15,7 @@ import numpy as np
 import pyarrow as pa
 
 from reconciler import records
+from reconciler.expected.terms import resolve_terms
 from reconciler.problems import Problem
 from reconciler.records import MISSING, Words
 
@@ -202,7 +203,9 @@ def day(agreeing: int = 40, broken: bool = True, problems: tuple[Problem, ...] =
     )  # fmt: skip
     source = SimpleNamespace(bonds=bonds_table(), tickets=tickets, confirmations=confirmations, cash=cash, rejects=rejects,
                              totals=totals, problems=problems, fatal=False, files=(), extras={})  # fmt: skip
-    return FabricatedDay(DATE, datetime.date(2026, 3, 17), source, None, items, allocations, breaks)
+    nothing = [records.table(schema) for schema in (records.RATES, records.FACTORS, records.CLOSINGS)]
+    terms, _problems = resolve_terms(source.bonds, *nothing)
+    return FabricatedDay(DATE, datetime.date(2026, 3, 17), source, terms, items, allocations, breaks)
 
 
 def ahead() -> Any:
@@ -250,7 +253,7 @@ def large_day(rows: int = 1_000_000) -> FabricatedDay:
         item=items["item"], item_row=number, rank=number + 1, stake_minor=random.integers(0, 10**9, rows),
         overdue_days=pattern.astype(np.int64),
     )  # fmt: skip
-    return FabricatedDay(small.date, small.since, small.source, None, items, small.allocations, breaks)
+    return FabricatedDay(small.date, small.since, small.source, small.terms, items, small.allocations, breaks)
 
 
 def working(_day: Any, item_row: int) -> Any:
