@@ -46,7 +46,7 @@ def date_column(name: str, title: str, help_text: str, width: int = 100) -> Colu
     def show(data: Records, at: Rows) -> list[Cell]:
         return [Cell(figures.date(day, data.year)) for day in data.table[name][at]]
 
-    return Column(name, title, help_text, show, lambda data: _day_rank(data.table[name]), width)
+    return Column(name, title, help_text, show, lambda data: _day_rank(data.table[name]), width, fit=True)
 
 
 def count_column(name: str, title: str, help_text: str, width: int = 92, alarm: str = "") -> Column:
@@ -153,8 +153,29 @@ def bonds_sheet(bonds: Table) -> Sheet:
 
 # --- files of the day --------------------------------------------------------------------------------------------------------
 
+class FileRows(Records):
+    """The totals per file and currency, with how each file was read (intake's File, by name)."""
+
+    def __init__(self, totals: Table, digits: np.ndarray, files: Sequence[Any]) -> None:
+        super().__init__(totals, digits)
+        self.read = {one.name: one for one in files}
+
+
+_DELIMITERS = {"\t": "tab", ";": "semicolon", ",": "comma", "|": "bar"}
+
+
+def _file(data: FileRows, at: Rows) -> list[Cell]:
+    cells = []
+    for name in texts(data.table["file"].take(at)):
+        one = data.read.get(name)
+        told = (one.broker, one.layout, one.encoding, _DELIMITERS.get(one.delimiter, one.delimiter)) if one is not None else ()
+        cells.append(Cell(name, "  ·  ".join(part for part in told if part), strong=True))
+    return cells
+
+
 FILE_COLUMNS: tuple[Column, ...] = (
-    text_column("file", "File", "The file's name in the morning's folder", 210, stretch=3, strong=True),
+    Column("file", "File", "The file in the morning's folder; below it broker, layout, encoding and delimiter", _file,
+           lambda data: data.table["file"].rank(), 230, stretch=3),
     text_column("currency", "Currency", "Rows and money are counted per file and currency", 76),
     count_column("rows_read", "Rows read", "Lines of the file without title lines", 84),
     count_column("rows_used", "Used", "Rows that became tickets, confirmations, entries …", 76),
@@ -175,10 +196,10 @@ FILE_FACTS = [
 ]  # fmt: skip
 
 
-def files_sheet(totals: Table, digits: np.ndarray) -> Sheet:
+def files_sheet(totals: Table, digits: np.ndarray, files: Sequence[Any] = ()) -> Sheet:
     """The files of the day, a row per file and currency."""
     facets = _facets(totals, [("file", "File"), ("currency", "Currency")])
-    return Sheet(Records(totals, digits), len(totals), FILE_COLUMNS, facts_of(totals, FILE_FACTS), index_of(totals, digits), facets)
+    return Sheet(FileRows(totals, digits, files), len(totals), FILE_COLUMNS, facts_of(totals, FILE_FACTS), index_of(totals, digits), facets)
 
 
 REJECT_COLUMNS: tuple[Column, ...] = (

@@ -58,7 +58,7 @@ def arrange(folder: Path | None, day: Any, coming: Any) -> Loaded:
         "due": payments_sheet(day, seen, ("due",)),
         "agreed": payments_sheet(day, seen, ("agrees", "within tolerance")),
         "bonds": bonds_sheet(bondlist(day)),
-        "files": files_sheet(day.source.totals, digits_of(day.source.totals["currency"])),
+        "files": files_sheet(day.source.totals, digits_of(day.source.totals["currency"]), day.source.files),
         "rejects": rejects_sheet(day.source.rejects),
         "ahead": ahead_sheet(coming.payments, coming.digits, year, day.source.bonds),
     }

@@ -201,8 +201,14 @@ def day(agreeing: int = 40, broken: bool = True, problems: tuple[Problem, ...] =
                                                                                          98110200],
         amount_rejected=[0, 0, 10000000, 0, 1010200], amount_set_aside=[0, 0, 0, 0, 0],
     )  # fmt: skip
+    files = tuple(
+        SimpleNamespace(name=name, broker=broker, layout=layout, encoding=encoding, delimiter=delimiter)
+        for name, broker, layout, encoding, delimiter in (
+            ("tickets.csv", "", "", "utf-8", ","), ("orrin_teale_20260331.csv", "Orrin & Teale", "by its headings", "cp1252", ";"),
+        )
+    )  # fmt: skip
     source = SimpleNamespace(bonds=bonds_table(), tickets=tickets, confirmations=confirmations, cash=cash, rejects=rejects,
-                             totals=totals, problems=problems, fatal=False, files=(), extras={})  # fmt: skip
+                             totals=totals, problems=problems, files=files, extras={})  # fmt: skip
     nothing = [records.table(schema) for schema in (records.RATES, records.FACTORS, records.CLOSINGS)]
     terms, _problems = resolve_terms(source.bonds, *nothing)
     return FabricatedDay(DATE, datetime.date(2026, 3, 17), source, terms, items, allocations, breaks)

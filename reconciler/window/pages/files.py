@@ -19,7 +19,7 @@ class FilesPage(Page):
     """The files above, the rejected rows below."""
 
     def __init__(self, actions: Mapping[str, QAction]) -> None:
-        super().__init__("files", "Files of the day", "line", "Find file, currency, amount …", actions, two_lines=False)
+        super().__init__("files", "Files of the day", "line", "Find file, currency, amount …", actions)
         self.rejects = SheetView("Rejected rows", two_lines=False)
         self.rejects_title = label("Rejected rows", "heading")
         self.no_rejects = Empty("No row was rejected", "Every row of every file was used or set aside.")
