@@ -15,6 +15,8 @@ from __future__ import annotations
 from typing import Any
 
 import numpy as np
+import pyarrow as pa
+import pyarrow.compute as pc
 
 from reconciler.bonds import accrual, pricing, settlement
 from reconciler.breaks.given import Given, is_word, per_word
@@ -107,8 +109,9 @@ def _stake(given: Given, breaks: Table, kind: Array, cash: Array, exposure: Arra
     return np.where(_among(kind, REVALUED), np.maximum(cash, np.where(exposure == MISSING, 0, exposure)), money)
 
 
-def _days(column: Words) -> Array:
-    return per_word(column, lambda words: np.array([int(word) for word in words], np.int64), 0)
+def _days(differences: Words) -> Array:
+    """Differences of dates, told in whole days."""
+    return np.asarray(pc.cast(differences.to_arrow(), pa.int64()).to_numpy(zero_copy_only=False), np.int64)
 
 
 def overdue_days(given: Given) -> Array:
