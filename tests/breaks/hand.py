@@ -30,6 +30,7 @@ BONDS: dict[str, list[Any]] = {
     "calendar": ["XSIF", "XSIF", "XSIF", "JP", "XSIF", "XSIF", "XECB"],
     "quote": ["price", "price", "discount", "price", "price", "price", "price"],
     "settlement_days": [1, 1, 1, 1, 1, 1, 2],
+    "market": ["", "", "US_TBILL", "", "", "", ""],
     "line": [2, 3, 4, 5, 6, 7, 8],
 }
 
