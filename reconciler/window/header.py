@@ -5,13 +5,14 @@ from __future__ import annotations
 from collections.abc import Sequence
 
 from PySide6.QtCore import QSize, Qt, QTimer, Signal
-from PySide6.QtGui import QAction, QFontMetrics, QPainter, QPaintEvent, QResizeEvent
+from PySide6.QtGui import QAction, QFontMetrics, QKeySequence, QPainter, QPaintEvent, QResizeEvent
 from PySide6.QtWidgets import QAbstractButton, QHBoxLayout, QLineEdit, QSizePolicy, QVBoxLayout, QWidget
 
 from reconciler.window import figures
 from reconciler.window.theme import SEMIBOLD, icon, theme
 from reconciler.window.widgets import ShortLabel, action_button, discard, label
 
+_FIND_KEY = QKeySequence("Ctrl+F").toString(QKeySequence.SequenceFormat.NativeText).replace("+", " ")
 _PAUSE = 40  # milliseconds after the last letter before a long list is narrowed
 
 
@@ -27,7 +28,7 @@ class SearchBox(QLineEdit):
         self.setPlaceholderText(hint)
         self.setAccessibleName("Find in this list")
         self.setClearButtonEnabled(False)
-        self.setFixedWidth(300)
+        self.setFixedWidth(330)
         self._glass = self.addAction(icon("find", "faint"), QLineEdit.ActionPosition.LeadingPosition)
         theme().changed.connect(self._renew_icon)
         self.pause = 0
@@ -42,6 +43,15 @@ class SearchBox(QLineEdit):
     def be_patient(self, rows: int) -> None:
         """With many rows a short pause lets fast typing narrow once and not per letter."""
         self.pause = _PAUSE if rows > 100_000 else 0
+
+    def paintEvent(self, event: QPaintEvent) -> None:  # noqa: N802
+        super().paintEvent(event)
+        if not self.text() and not self.hasFocus():
+            painter = QPainter(self)
+            painter.setFont(theme().font("small"))
+            painter.setPen(theme().colour("faint"))
+            right = Qt.AlignmentFlag.AlignRight | Qt.AlignmentFlag.AlignVCenter
+            painter.drawText(self.rect().adjusted(0, 0, -16, 0), right, _FIND_KEY)
 
     def keyPressEvent(self, event) -> None:  # type: ignore[no-untyped-def]  # noqa: N802, ANN001
         if event.key() == Qt.Key.Key_Escape:

@@ -23,9 +23,10 @@ _FACT_OF_BREAK = {
 _SILENT = {"no confirmation": "silent", "no ticket": "no ticket", "no cash": "no cash", "told twice": "told twice",
            "unknown bond": "unknown bond", "unsound terms": "unsound terms"}  # fmt: skip
 _LABELS = {
-    "side": "Side", "face": "Face", "price": "Price", "trade date": "Trade date", "date": "Payment date",
-    "principal": "Principal", "accrued": "Accrued", "fees": "Fees", "amount": "Amount", "currency": "Currency",
-    "account": "Account", "yield": "Yield", "reference": "Reference",
+    # in this order: what is paid and when stands first, then what it is made of
+    "amount": "Amount", "date": "Payment date", "side": "Side", "face": "Face", "price": "Price", "principal": "Principal",
+    "accrued": "Accrued", "fees": "Fees", "trade date": "Trade date", "currency": "Currency", "account": "Account",
+    "yield": "Yield", "reference": "Reference",
 }  # fmt: skip
 
 

@@ -18,7 +18,7 @@ def _marks(loaded: Loaded, row: int) -> list[tuple[str, str, str]]:
 
 def test_marks_follow_the_breaks(loaded: Loaded) -> None:
     assert _marks(loaded, 0) == [("Settlement amount", "Bank", "differ")]
-    assert _marks(loaded, 2) == [("Price", "Broker", "differ"), ("Settlement amount", "Broker", "differ")]
+    assert _marks(loaded, 2) == [("Settlement amount", "Broker", "differ"), ("Price", "Broker", "differ")]
     assert _marks(loaded, 6) == [("Payment date", "Bank", "day")]
 
 
