@@ -77,23 +77,23 @@ def _breaks(given: Given, finds: list[Found]) -> Table:
         return table(BREAKS)
     item_row = np.concatenate([one.item_row for one in finds])
     digits = [given.digits[one.item_row] for one in finds]
-    told = {
+    columns: dict[str, Any] = {
         name: Words.from_arrow(pa.concat_arrays([one.text(name, d) for one, d in zip(finds, digits, strict=True)]))
         for name in ("expected", "found", "difference")
     }
-    rows = len(item_row)
+    for name, words_of in (("explanation", wording.sentence), ("next_step", wording.next_step)):
+        columns[name] = Words.from_arrow(pa.concat_arrays([words_of(given, one) for one in finds]))
+    columns["break"] = _words(BREAK_KINDS, [BREAK_KINDS.index(one.kind) for one in finds], finds)
+    columns["certainty"] = Words.constant("open", len(item_row))
     return table(
         BREAKS,
+        len(item_row),
         item=given.items["item"].take(item_row),
         item_row=item_row,
         party=_words(PARTIES, [one.party for one in finds], finds),
         difference_minor=np.concatenate([_minor(one) for one in finds]),
-        certainty=Words(np.full(rows, CERTAINTIES.index("open"), np.int32), pa.array(CERTAINTIES)),
-        explanation=Words.from_arrow(pa.concat_arrays([wording.sentence(given, one) for one in finds])),
-        next_step=Words.from_arrow(pa.concat_arrays([wording.next_step(given, one) for one in finds])),
         currency=given.items["currency"].take(item_row),
-        **told,
-        **{"break": _words(BREAK_KINDS, [BREAK_KINDS.index(one.kind) for one in finds], finds)},
+        **columns,
     )
 
 

@@ -107,14 +107,14 @@ class Given:
         """The day cash is expected: the terms', else the desk's, else the broker's."""
         items = self.items
         desk = np.where(np.isnat(items["desk_date"]), items["broker_date"], items["desk_date"])
-        return np.where(np.isnat(items["terms_date"]), desk, items["terms_date"])
+        return np.asarray(np.where(np.isnat(items["terms_date"]), desk, items["terms_date"]))
 
     @functools.cached_property
     def expected_minor(self) -> Array:
         """The amount expected: the terms', else the desk's, else the broker's."""
         items = self.items
         desk = np.where(items["desk_minor"] == MISSING, items["broker_minor"], items["desk_minor"])
-        return np.where(items["terms_minor"] == MISSING, desk, items["terms_minor"])
+        return np.asarray(np.where(items["terms_minor"] == MISSING, desk, items["terms_minor"]))
 
     @functools.cached_property
     def repeated_tickets(self) -> tuple[Array, Array]:
@@ -161,14 +161,14 @@ def is_word(column: Words, word: str) -> Array:
 def differs(one: Words, other: Words) -> Array:
     """True where both told something and not the same."""
     a, b = unify(one, other)
-    return (a.codes != b.codes) & (a.codes >= 0) & (b.codes >= 0)
+    return np.asarray((a.codes != b.codes) & (a.codes >= 0) & (b.codes >= 0))
 
 
 def per_word(column: Words, of: Any, blank: Any) -> Array:
     """A value worked out once per distinct word, for every row; `blank` where nothing is told."""
     words: Sequence[str] = column.values.to_pylist()
     values = np.asarray(of(words))
-    return np.append(values, np.asarray(blank, values.dtype if len(values) else None))[column.codes]
+    return np.asarray(np.append(values, np.asarray(blank, values.dtype if len(values) else None))[column.codes])
 
 
 def digits_of(currency: Words) -> Array:

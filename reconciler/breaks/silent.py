@@ -39,8 +39,7 @@ def no_ticket(given: Given) -> Iterator[Found]:
 
 def overdue(given: Given) -> Array:
     """True for items whose cash should have come before today and did not."""
-    waiting = waits_for_cash(given)
-    return waiting & (given.expected_date < given.date)
+    return np.asarray(waits_for_cash(given) & (given.expected_date < given.date))
 
 
 def waits_for_cash(given: Given) -> Array:

@@ -46,7 +46,7 @@ def _unit(texts: Words) -> Array:
     text = pc.utf8_rtrim(pc.fill_null(texts.to_arrow(), ""), " %")
     point = pc.find_substring_regex(text, "[.,]").to_numpy(False)
     places = np.where(point < 0, 0, pc.utf8_length(text).to_numpy(False) - point - 1)
-    return 10 ** np.maximum(PLACES - places, 0).astype(np.int64)
+    return np.asarray(10 ** np.maximum(PLACES - places, 0).astype(np.int64))
 
 
 def _who_fits(given: Given, rows: Array, desk: tuple[Array, Array], broker: tuple[Array, Array]) -> tuple[Array, Array]:
