@@ -44,7 +44,7 @@ def overdue(given: Given) -> Array:
 
 def waits_for_cash(given: Given) -> Array:
     """True for items that no entry pays, and that need one."""
-    waiting = (given.items["bank_minor"] == MISSING) & ~given.bank_only & (given.expected_minor != 0)
+    waiting: Array = (given.items["bank_minor"] == MISSING) & ~given.bank_only & (given.expected_minor != 0)
     waiting[given.repeated_tickets[0]] = False
     return waiting
 
