@@ -42,6 +42,9 @@ def trimmed(column: pa.Array) -> pa.Array:
 # --- numbers ----------------------------------------------------------------------------------------------------------------
 
 
+_DIGITS_AND_MARKS = re.compile(r"[0-9.,]*[0-9][0-9.,]*")
+
+
 def tidy(text: str) -> str:
     """A number's text in plain characters: width folded, one kind of minus, no inner spaces or apostrophes, sign in front."""
     plain = unicodedata.normalize("NFKC", text).strip().replace("\u2212", "-").translate(_SPACES)
@@ -53,11 +56,16 @@ def tidy(text: str) -> str:
 
 
 def mark_evidence(texts: Sequence[str]) -> tuple[set[str], bool]:
-    """Decimal marks that some text proves ("." or ","), and whether some text leaves it open."""
+    """Decimal marks that some text proves ("." or ","), and whether some text leaves it open.
+
+    A text that is no number in either style (1,000O) proves nothing: it costs its own row, not the file.
+    """
     proven: set[str] = set()
     undecided = False
     for text in texts:
         plain = tidy(text).lstrip("-")
+        if not _DIGITS_AND_MARKS.fullmatch(plain):
+            continue
         points, commas = plain.count("."), plain.count(",")
         if points and commas:
             proven.add("." if plain.rfind(".") > plain.rfind(",") else ",")

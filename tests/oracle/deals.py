@@ -162,6 +162,8 @@ def deal(scene: Scene, bond: Bond, number: int) -> Trade | None:
         "broker": broker, "account": account, "broker_reference": f"{broker[:2].upper()}{number * 7 + 300000}",
         "desk_reference": f"T{number:06d}", "yield_text": "", "status": "new", "quote": bond.quote,
     })  # fmt: skip
+    if facts["settlement"] <= 0:
+        return None
     if rng.random() < 0.4 and _yields_plainly(bond, settle):
         facts["yield_text"] = f"{street_yield(bond, price, settle):.{rng.choice((3, 4, 6))}f}"
     confirmed = dict(facts)
