@@ -51,11 +51,16 @@ def _coded(words: Words) -> tuple[np.ndarray, list[str]]:
     return words.codes, words.values.to_pylist()
 
 
-def _steps(bonds: Table, table: Table, value: str) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
-    codes = table["bond"].codes_in(bonds["bond"].values)
+def bond_rows(told: Words, bonds: Table) -> np.ndarray:
+    """The row of bonds.csv that each text names, int64; -1 where blank or not known."""
     row_of = np.full(len(bonds["bond"].values) + 1, -1, np.int64)
     # of two rows for one bond the first is meant; intake has reported the second
     own = bonds["bond"].codes
     row_of[own[::-1]] = np.arange(len(bonds))[::-1]
     row_of[-1] = -1
-    return row_of[codes], table["from"], table[value]
+    found: np.ndarray = row_of[told.codes_in(bonds["bond"].values)]
+    return found
+
+
+def _steps(bonds: Table, table: Table, value: str) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
+    return bond_rows(table["bond"], bonds), table["from"], table[value]
