@@ -20,7 +20,6 @@ from reconciler.breaks.yields import yields
 from reconciler.records import (
     BREAK_KINDS,
     BREAKS,
-    CERTAINTIES,
     MISSING,
     PARTIES,
     STATES,

@@ -120,7 +120,9 @@ def test_all_of_them_together_give_the_same() -> None:
 def test_an_amount_is_told_with_its_difference() -> None:
     one = only(found([One(broker={"settlement_minor": AMOUNT + 500})])[1])
     assert (one["expected"], one["found"], one["difference"]) == ("-1006666.67", "-1006671.67", "-5.00")
-    assert one["difference_minor"] == -500 and one["currency"] == "USD" and one["certainty"] == "open"
+    assert one["difference_minor"] == -500
+    assert one["currency"] == "USD"
+    assert one["certainty"] == "open"
 
 
 def test_yen_have_no_decimals() -> None:
@@ -155,7 +157,8 @@ def test_a_side_is_told_in_words() -> None:
 def test_the_settings_say_what_is_within_tolerance() -> None:
     ones = [One(broker={"settlement_minor": AMOUNT + 5}), coupon(bond=YEN, bank=[{"amount_minor": 2_000_001}])]
     items, breaks = found(ones, settings.of({"tolerance": {"USD": 5, "JPY": 0}}))
-    assert items["state"].to_list() == ["within tolerance", "break"] and pairs(breaks) == [("payment amount", "Bank")]
+    assert items["state"].to_list() == ["within tolerance", "break"]
+    assert pairs(breaks) == [("payment amount", "Bank")]
 
 
 def test_a_negative_accrued_is_held_as_told() -> None:
@@ -164,7 +167,8 @@ def test_a_negative_accrued_is_held_as_told() -> None:
         told = {"side": side, "accrued_minor": -5000}
         terms = {"side": side, "terms_accrued_minor": side * 5000, "terms_minor": -side * AMOUNT}
         items, breaks = found([One(broker=told, desk=told, terms=terms, bank=[{"amount_minor": -side * AMOUNT}])])
-        assert len(breaks) == 0 and items["state"].to_list() == ["agrees"]
+        assert len(breaks) == 0
+        assert items["state"].to_list() == ["agrees"]
         _, breaks = found([One(broker={**told, "accrued_minor": 5000}, desk=told, terms=terms, bank=[{"amount_minor": -side * AMOUNT}])])
         assert (only(breaks)["expected"], only(breaks)["found"], only(breaks)["difference"]) == ("-50.00", "50.00", "100.00")
 
@@ -180,7 +184,8 @@ def test_a_confirmation_told_twice_is_a_break_of_the_item_it_repeats() -> None:
     from reconciler.breaks import finding
 
     items, breaks = finding.find_breaks(replace(both, items=kept, allocations=both.allocations.take(np.array([0]))))
-    assert pairs(breaks) == [("told twice", "Broker")] and items["state"].to_list() == ["break"]
+    assert pairs(breaks) == [("told twice", "Broker")]
+    assert items["state"].to_list() == ["break"]
     assert (only(breaks)["expected"], only(breaks)["found"]) == ("TV0", "TV1")
     assert "TV1" in only(breaks)["explanation"]
 
@@ -188,7 +193,8 @@ def test_a_confirmation_told_twice_is_a_break_of_the_item_it_repeats() -> None:
 def test_a_ticket_told_twice_asks_for_nothing_more() -> None:
     _, breaks = found([One(), One(broker=None, bank=[], repeats=[("ticket", 0)])])
     assert pairs(breaks) == [("told twice", "Desk")]
-    assert only(breaks)["item"] == "trade 001" and (only(breaks)["expected"], only(breaks)["found"]) == ("T-0", "T-1")
+    assert only(breaks)["item"] == "trade 001"
+    assert (only(breaks)["expected"], only(breaks)["found"]) == ("T-0", "T-1")
 
 
 def test_an_entry_told_twice_is_not_called_unexplained() -> None:
@@ -214,14 +220,17 @@ def test_the_yield_that_goes_with_the_price_is_right() -> None:
     """4 % half-yearly at 99.5 with 5.2 years left yields 4.10655 % (QuantLib 1.44, BondFunctions, street): the other is wrong."""
     right, wrong = {"yield_e12": 4_107 * 10**9, "yield_text": "4.107"}, {"yield_e12": 4_166 * 10**9, "yield_text": "4.166"}
     _, breaks = found([One(desk=right, broker=wrong)])
-    assert pairs(breaks) == [("yield", "Broker")] and only(breaks)["expected"] == "4.107"
+    assert pairs(breaks) == [("yield", "Broker")]
+    assert only(breaks)["expected"] == "4.107"
     _, breaks = found([One(desk=wrong, broker=right)])
-    assert pairs(breaks) == [("yield", "Desk")] and (only(breaks)["expected"], only(breaks)["found"]) == ("4.107", "4.166")
+    assert pairs(breaks) == [("yield", "Desk")]
+    assert (only(breaks)["expected"], only(breaks)["found"]) == ("4.107", "4.166")
 
 
 def test_nothing_gives_nothing() -> None:
     items, breaks = found([])
-    assert len(items) == 0 and len(breaks) == 0
+    assert len(items) == 0
+    assert len(breaks) == 0
 
 
 def test_every_state_of_the_contract_is_reached() -> None:
@@ -238,4 +247,5 @@ def test_the_currency_is_the_bonds(bond: int, currency: str) -> None:
     told = {"currency": currency}
     price = {"price_e12": 4 * 10**12} if bond == BILL else {}
     items, breaks = found([One(bond=bond, broker={**told, **price}, desk={**told, **price}, terms=price)])
-    assert len(breaks) == 0 and items["state"].to_list() == ["agrees"]
+    assert len(breaks) == 0
+    assert items["state"].to_list() == ["agrees"]

@@ -103,7 +103,8 @@ def test_exposure_of_a_thirty_year_zero_is_far_above_a_bills() -> None:
     discount = {"price_e12": 4 * 10**12}
     bill = One(bond=BILL, broker=None, terms=discount, desk=discount)
     _, breaks = found([bill, zero])
-    assert breaks["item"].to_list() == ["trade 001", "trade 000"] and breaks["rank"].tolist() == [1, 2]
+    assert breaks["item"].to_list() == ["trade 001", "trade 000"]
+    assert breaks["rank"].tolist() == [1, 2]
     years = (date(2056, 2, 15) - date(2026, 3, 30)).days / 365
     # compounding yearly, in closed form: price (1 + y)^-t with y from the dealt price
     dealt = (100 / 22) ** (1 / years) - 1
@@ -126,7 +127,8 @@ def test_a_disputed_face_is_worth_at_least_the_cash_in_dispute() -> None:
 def test_exposure_is_blank_where_the_price_gives_no_yield() -> None:
     told = {"price_e12": 10**18 - 1}
     one = _one(One(broker=None, desk=told, terms=told))
-    assert one["rate_exposure_minor"] == MISSING and one["stake_minor"] == 0
+    assert one["rate_exposure_minor"] == MISSING
+    assert one["stake_minor"] == 0
     assert _one(One(bank=[]))["rate_exposure_minor"] == MISSING
 
 

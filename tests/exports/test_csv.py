@@ -87,7 +87,8 @@ def test_cancelled_leaves_the_old_file_and_nothing_else(tmp_path: Path) -> None:
 
     with pytest.raises(KeyboardInterrupt):
         csv.write(path, [Column("n", "count", np.arange(3))], progress=stop)
-    assert [p.name for p in tmp_path.iterdir()] == ["list.csv"] and path.read_text() == "before"
+    assert [p.name for p in tmp_path.iterdir()] == ["list.csv"]
+    assert path.read_text() == "before"
 
 
 def test_a_place_that_cannot_be_written_is_a_clear_sentence(tmp_path: Path) -> None:

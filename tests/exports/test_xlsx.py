@@ -29,12 +29,17 @@ def test_cells_are_typed(tmp_path: Path) -> None:
     sheet = openpyxl.load_workbook(path).active
     assert [cell.value for cell in sheet[1]] == ["name", "day", "money", "price", "rows"]
     assert [cell.value for cell in sheet[2]] == ["=1+1", datetime.datetime(2026, 3, 31), -1234.5, 98.875, 7]
-    assert sheet["A2"].data_type == "s" and sheet["A4"].hyperlink is None
+    assert sheet["A2"].data_type == "s"
+    assert sheet["A4"].hyperlink is None
     assert [cell.value for cell in sheet[3]] == [None] * 5
     assert [cell.value for cell in sheet[4]] == ["http://x.example", "1850-01-01", 12345, 100, 0]
-    assert sheet["C5"].value == "100000000000000.01" and sheet["D5"].value == -0.5
-    assert sheet["C2"].number_format == "#,##0.00" and sheet["C4"].number_format == "#,##0" and sheet["B2"].number_format == "yyyy-mm-dd"
-    assert sheet.freeze_panes == "A2" and sheet.auto_filter.ref == "A1:E5"
+    assert sheet["C5"].value == "100000000000000.01"
+    assert sheet["D5"].value == -0.5
+    assert sheet["C2"].number_format == "#,##0.00"
+    assert sheet["C4"].number_format == "#,##0"
+    assert sheet["B2"].number_format == "yyyy-mm-dd"
+    assert sheet.freeze_panes == "A2"
+    assert sheet.auto_filter.ref == "A1:E5"
     assert sheet.column_dimensions["A"].width >= len("http://x.example")
 
 
@@ -46,7 +51,9 @@ def test_long_lists_go_on_in_further_sheets(tmp_path: Path, monkeypatch: pytest.
     xlsx.write(path, [Column("n", "count", np.arange(12))], progress=told.append)
     book = openpyxl.load_workbook(path)
     values = [cell.value for sheet in book for row in sheet.iter_rows(min_row=2) for cell in row]
-    assert values == list(range(12)) and len(book.worksheets) == 3 and told == [0, 2, 4, 5, 7, 9, 10]
+    assert values == list(range(12))
+    assert len(book.worksheets) == 3
+    assert told == [0, 2, 4, 5, 7, 9, 10]
 
 
 def test_the_same_list_gives_the_same_bytes(tmp_path: Path) -> None:
