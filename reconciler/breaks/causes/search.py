@@ -1,0 +1,323 @@
+"""Every payment that differs is reckoned again under every known way of going wrong; what reproduces all that was told, fits.
+
+Single causes first, then pairs of causes that change different parts of the payment, then slips of the pen on top of a cause. All
+cases at once, one cause after the other: no loop over payments. What fits is kept in order; how many figures were tried is kept
+too, because a fit means little without it (judging).
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Iterator
+from dataclasses import dataclass, field
+from typing import Any
+
+import numpy as np
+
+from reconciler.bonds.terms import Terms
+from reconciler.breaks.causes import reckoning, slips
+from reconciler.breaks.causes.accruals import ACCRUALS, DAY_COUNT, ONE_DAY, TO_TRADE
+from reconciler.breaks.causes.cases import TRADE, Cases
+from reconciler.breaks.causes.judging import LOOSE, accidental
+from reconciler.breaks.causes.readings import READINGS
+from reconciler.breaks.causes.reckoning import Facts
+from reconciler.breaks.causes.variants import FACE, FEES, WHOLE, Cause, Payment, Variant, sums
+from reconciler.money import MISSING
+
+Array = np.ndarray[Any, Any]
+Hypothesis = tuple[Variant, ...]
+
+CHUNK = 16_384
+
+PRICE_FAMILY = "price"
+PRICES: tuple[Variant, ...] = tuple(
+    Variant(
+        Cause(r.name, PRICE_FAMILY if "first" not in r.name else "rounding", "Ask for the price as dealt, written in decimals.", 0.8),
+        "price", r.wording, r.read, (TRADE,), r.weight,
+    )
+    for r in READINGS
+)  # fmt: skip
+
+UNSCALED = Cause("factor ignored", "face", "Quote the factor and its date.", 0.8)
+OLD_FACTOR = Cause("factor of another date", "face", "Load the factor in force.", 0.6)
+FOLLOWS = Cause("follows from the facts told", "told facts", "Settle the fact that differs; the amount follows from it.", 1.0)
+
+
+def slip_cause(slip: slips.Slip) -> Cause:
+    """The cause behind a slip of the pen."""
+    return Cause(slip.name, "slip", "Ask for the figure to be corrected.", slip.weight)
+
+
+SLIP_CAUSES = {slip.name: slip_cause(slip) for slip in slips.SLIPS}
+
+
+@dataclass
+class Fits:
+    """What fits: flat pairs (case, hypothesis number), hypotheses in the order tried, and the chance of an accident per case."""
+
+    case: list[Array] = field(default_factory=list)
+    number: list[Array] = field(default_factory=list)
+    hypotheses: list[Hypothesis] = field(default_factory=list)
+    tried: int = 0
+    figures: dict[Hypothesis, Payment] = field(default_factory=dict)
+
+    def flat(self) -> tuple[Array, Array]:
+        """Case numbers and hypothesis numbers."""
+        if not self.case:
+            return np.zeros(0, np.int64), np.zeros(0, np.int64)
+        return np.concatenate(self.case), np.concatenate(self.number)
+
+
+_FACTS = ("accrued_days", "accrued", "principal", "amount")
+
+
+class Search:
+    """The search over one stretch of cases."""
+
+    def __init__(self, cases: Cases, terms: Terms) -> None:
+        self.cases = cases
+        self.facts = reckoning.of_cases(cases, terms)
+        self.base = reckoning.pay(self.facts)
+        self.told = {name: getattr(cases.told, name) for name in _FACTS}
+        self.silent = {name: column == MISSING for name, column in self.told.items()}
+        self.right = self._right()
+        self.fits = Fits()
+        self.numbers: dict[str, int] = {}
+        self.open = np.ones(len(cases), np.bool_)
+        self.amounts: list[Array] = []
+        self.loose: list[Array] = []
+
+    def _right(self) -> Array:
+        """The figure that the told one is measured against: the amount as the terms have it."""
+        return self.cases.terms.amount
+
+    def consistent(self, payment: Payment) -> Array:
+        """Where every told figure but the amount comes out."""
+        ok = np.ones(len(self.cases), np.bool_)
+        for name in _FACTS[:3]:
+            ok &= self.silent[name] | (self.told[name] == getattr(payment, name))
+        return ok
+
+    def try_out(self, hypothesis: Hypothesis, payment: Payment, applies: Array) -> None:
+        """Holds one recomputed payment against what was told, for the cases still open."""
+        same_facts = self.consistent(payment) & applies
+        amount = payment.amount
+        fits = same_facts & (self.silent["amount"] | (self.told["amount"] == amount)) & self.open
+        self.fits.tried += 1
+        # only figures that the other told facts allow can fit by accident; 
+        # `loose` has the accrued of every try, for the case that the told accrued is the noise and the amount follows it
+        known = applies & (amount != MISSING)
+        self.amounts.append(np.where(same_facts & known, amount, self.right))
+        accrued = self.cases.terms.accrued
+        self.loose.append(np.where(known & (payment.accrued != MISSING), payment.accrued, accrued))
+        found = np.flatnonzero(fits)
+        if len(found):
+            self.fits.case.append(found)
+            self.fits.number.append(np.full(len(found), len(self.fits.hypotheses)))
+            self.fits.hypotheses.append(hypothesis)
+
+    def kinds(self, *variants: Variant) -> Array:
+        """Where all the variants apply to the kind of payment."""
+        ok = np.ones(len(self.cases), np.bool_)
+        for variant in variants:
+            ok &= np.isin(self.cases.kind, variant.kinds)
+        return ok
+
+    def chances(self, rows: Array) -> Array:
+        """Expected accidental fits for some of the cases, given all figures tried so far."""
+        right, told = self.right[rows], self.told["amount"][rows]
+        strict = accidental(right, told, np.stack([column[rows] for column in self.amounts], axis=1))
+        right, told = self.cases.terms.accrued[rows], self.told["accrued"][rows]
+        asked = ~self.silent["accrued"][rows] & (told != right)
+        told = np.where(asked, told, right)
+        loose = accidental(right, told, np.stack([column[rows] for column in self.loose], axis=1))
+        return np.where(asked & (loose >= LOOSE), np.maximum(strict, loose), strict)
+
+
+def _differs(payment: Payment, base: Payment) -> Array:
+    return (payment.amount != base.amount) | (payment.accrued != base.accrued) | (payment.principal != base.principal)
+
+
+def singles(search: Search) -> Iterator[tuple[Variant, Payment]]:
+    """Every single cause with the payment it gives, MISSING figures where it cannot be."""
+    facts, base = search.facts, search.base
+    interest = (base.accrued, base.accrued_days)
+    for variant in ACCRUALS:
+        yield variant, reckoning.pay(facts, base.principal, variant.make(facts))  # type: ignore[arg-type]
+    plain_price = facts.terms.quote[facts.bond_row] < 2
+    for variant in PRICES:
+        price = np.where(plain_price & (facts.kind == TRADE), variant.make(facts.price), MISSING)
+        yield variant, reckoning.pay(facts.changed(price=price), None, interest)
+    for variant in FACE:
+        face = np.asarray(variant.make(facts.face))
+        safe = np.where(face == MISSING, 0, face)
+        yield variant, _void(reckoning.pay(facts.changed(face=safe)), face == MISSING)
+    for variant, changed in _factors(facts):
+        yield variant, reckoning.pay(changed)
+    for variant in FEES:
+        yield variant, _with_fees(base, np.asarray(variant.make(base)))
+    for variant in WHOLE:
+        yield variant, base.changed(amount=np.asarray(variant.make(base, search.cases.digits)))
+
+
+def _void(payment: Payment, where: Array) -> Payment:
+    return payment.changed(amount=np.where(where, MISSING, payment.amount))
+
+
+def _with_fees(base: Payment, fees: Array) -> Payment:
+    return base.changed(fees=fees, amount=sums(base.kind, base.side, base.principal, base.accrued, fees))
+
+
+def _factors(facts: Facts) -> Iterator[tuple[Variant, Facts]]:
+    terms = facts.terms
+    if not len(terms.factor_e12s):
+        return
+    yield Variant(UNSCALED, "face", "the factor (or index ratio) is ignored", lambda f: f, (0, 1, 2)), facts.with_terms(
+        factor_e12s=np.full(len(terms.factor_e12s), 10**12)
+    )
+    moved = np.roll(terms.factor_e12s, 1)
+    moved[terms.factor_offsets[:-1][np.diff(terms.factor_offsets) > 0]] = 10**12
+    yield Variant(OLD_FACTOR, "face", "the factor (or index ratio) before the last is used", lambda f: f, (0, 1, 2)), facts.with_terms(
+        factor_e12s=moved
+    )
+
+
+def _slipped(search: Search, hypothesis: Hypothesis, payment: Payment, lowest: int = 0) -> None:
+    """Slips of the pen in the amount, on top of a payment reckoned some way."""
+    for slip, _place, typed in slips.candidates(payment.amount, lowest):
+        variant = Variant(SLIP_CAUSES[slip.name], "whole", f"{slip.wording} in the amount", lambda p: p, (0, 1, 2))
+        search.try_out((*hypothesis, variant), payment.changed(amount=typed), typed != MISSING)
+
+
+def _slipped_parts(search: Search) -> None:
+    """Slips in the told accrued or its days, with the amount following or not."""
+    base = search.base
+    for name, words in (("accrued", "accrued"), ("principal", "principal")):
+        asked = ~search.silent[name] & (search.told[name] != getattr(base, name))
+        if not asked.any():
+            continue
+        for slip, _place, typed in slips.candidates(getattr(base, name)):
+            variant = Variant(SLIP_CAUSES[slip.name], "accrual", f"{slip.wording} in the {words}", lambda p: p)
+            alone = base.changed(**{name: typed})
+            following = alone.changed(amount=sums(base.kind, base.side, alone.principal, alone.accrued, base.fees))
+            search.try_out((variant,), alone, asked & (typed != MISSING))
+            search.try_out((variant,), following, asked & (typed != MISSING))
+
+
+def run(cases: Cases, terms: Terms) -> list[tuple[Array, Search, Array]]:
+    """Searches all cases, a stretch at a time: (case numbers, search, chance of an accident per case)."""
+    out = []
+    for first in range(0, len(cases), CHUNK):
+        rows = np.arange(first, min(first + CHUNK, len(cases)))
+        search = Search(cases.take(rows), terms)
+        out.append((rows, search, _search(search)))
+    return out
+
+
+def _search(search: Search) -> Array:
+    search.try_out((Variant(FOLLOWS, "told", "the facts are as told", lambda p: p),), search.base, _told_differs(search))
+    done = []
+    for variant, payment in singles(search):
+        search.try_out((variant,), payment, search.kinds(variant) & _differs(payment, search.base))
+        done.append((variant, payment))
+    _slipped(search, (), search.base)
+    _slipped_parts(search)
+    chance = np.ones(len(search.cases))
+    explained = _explained(search)
+    chance[explained] = search.chances(explained)
+    search.open[explained] = False
+    if search.open.any():
+        _pairs(search, done, chance)
+    return chance
+
+
+def _told_differs(search: Search) -> Array:
+    """Where the party's own facts give another amount than the terms'."""
+    return (search.base.amount != search.cases.terms.amount) | (search.base.accrued != search.cases.terms.accrued)
+
+
+def _explained(search: Search) -> Array:
+    case, _number = search.fits.flat()
+    return np.unique(case)
+
+
+def _pairs(search: Search, done: list[tuple[Variant, Payment]], chance: Array) -> None:
+    """Two causes at once, for the cases that no single one explains."""
+    rest = np.flatnonzero(search.open)
+    part = Search(search.cases.take(rest), search.facts.terms)
+    few = [(variant, _rows(payment, rest)) for variant, payment in done]
+    by_part: dict[str, list[tuple[Variant, Payment]]] = {}
+    for variant, payment in few:
+        by_part.setdefault(variant.part, []).append((variant, payment))
+    _dated_day_counts(part)
+    base = part.base
+    for a, b in (("accrual", "price"), ("accrual", "fees"), ("price", "fees")):
+        for one, first in by_part[a]:
+            for two, second in by_part[b]:
+                main = second.principal if b == "price" else first.principal if a == "price" else base.principal
+                minor, days = (first.accrued, first.accrued_days) if a == "accrual" else (base.accrued, base.accrued_days)
+                fees = second.fees if b == "fees" else base.fees
+                amount = sums(base.kind, base.side, main, minor, fees)
+                both = base.changed(principal=main, accrued=minor, accrued_days=days, fees=fees, amount=amount)
+                part.try_out((one, two), both, part.kinds(one, two) & _differs(first, base) & (second.amount != base.amount))
+    for one, first in few:
+        if one.part == "whole":
+            continue
+        for two in WHOLE:
+            amount = np.asarray(two.make(first, part.cases.digits))
+            changes = _differs(first, base) & (amount != first.amount)
+            part.try_out((one, two), first.changed(amount=amount), part.kinds(one, two) & changes)
+    _faces(part, by_part.get("face", []))
+    _join(search, part, rest, chance)
+
+
+def _faces(part: Search, faces: list[tuple[Variant, Payment]]) -> None:
+    """A wrong face together with a wrong accrual or price."""
+    for one, payment in faces:
+        if one.cause in (UNSCALED, OLD_FACTOR):
+            continue
+        usable = payment.amount != MISSING
+        facts = part.facts.changed(face=np.where(usable, payment.face, 0))
+        for two in ACCRUALS:
+            made = reckoning.pay(facts, payment.principal, two.make(facts))  # type: ignore[arg-type]
+            part.try_out((one, two), made, usable & part.kinds(one, two) & (made.accrued != payment.accrued))
+
+
+def _dated_day_counts(part: Search) -> None:
+    """A wrong end of the accrual together with another day count."""
+    for dated in ACCRUALS:
+        if dated.cause not in (ONE_DAY, TO_TRADE):
+            continue
+        for counted in ACCRUALS:
+            if counted.cause is not DAY_COUNT:
+                continue
+            make: Callable[[Facts], tuple[Array, Array]] = counted.make  # type: ignore[assignment]
+            date = part.facts.trade_date if dated.cause is TO_TRADE else None
+            shift = _shift_of(dated)
+            moved = part.facts.changed(date=part.facts.date + shift if date is None else np.where(np.isnat(date), part.facts.date, date))
+            made = reckoning.pay(part.facts, part.base.principal, make(moved))
+            part.try_out((dated, counted), made, part.kinds(dated, counted) & _differs(made, part.base))
+
+
+def _shift_of(dated: Variant) -> int:
+    words = {"one": 1, "two": 2, "three": 3}
+    days = words.get(dated.wording.split()[0], 0)
+    return -days if "left out" in dated.wording else days
+
+
+def _rows(payment: Payment, rows: Array) -> Payment:
+    return Payment(**{name: column[rows] for name, column in vars(payment).items()})
+
+
+def _join(search: Search, part: Search, rest: Array, chance: Array) -> None:
+    """What the pairs explained, put among the rest."""
+    offset = len(search.fits.hypotheses)
+    search.fits.hypotheses += part.fits.hypotheses
+    search.fits.case += [rest[case] for case in part.fits.case]
+    search.fits.number += [number + offset for number in part.fits.number]
+    search.fits.tried += part.fits.tried
+    explained = _explained(part)
+    if len(explained):
+        single = [column[rest] for column in search.amounts]
+        part.amounts = single + part.amounts
+        part.loose = [column[rest] for column in search.loose] + part.loose
+        chance[rest[explained]] = part.chances(explained)
