@@ -200,15 +200,6 @@ def _order(sheet: Sheet, columns: dict[str, int]) -> str:
     proven = cells.slashed(every)
     if len(proven) == 1:
         return next(iter(proven))
-    if not proven and len(texts) == 2:
-        plausible = []
-        for order in ("dmy", "mdy"):
-            traded, settled = (cells.dates(sheet.column(columns[fact]), order).values for fact in DATES)
-            gap = (settled - traded).astype(np.int64)[~np.isnat(traded) & ~np.isnat(settled)]
-            if len(gap) and ((gap >= 0) & (gap <= 14)).all():
-                plausible.append(order)
-        if len(plausible) == 1:
-            return plausible[0]
     reason = "has dates in which day and month cannot be told apart; name the date style in a layout file, such as date = \"%d/%m/%Y\"."
     raise unreadable(sheet.raw.file, reason, "ambiguous-dates", sheet.raw.header_line, next(iter(every), ""))
 
