@@ -6,15 +6,16 @@ grid, the first coupon, the calendars' numbers. A bond whose terms are not sound
 row numbers stay those of the bonds table.
 
 The coupon grid is rolled back from the last regular coupon, or from maturity where none is told. The end-of-month rule
-applies where told; where nobody tells it (nor the market), it applies when grid anchor and first coupon (if told) both
-are month ends and the first coupon or the anchor cannot be met otherwise: a 30 June bond that pays on 31 December does.
+applies where bond or market say so; where the bond does not tell it, also when anchor and first coupon (or accrual start, where no
+first coupon is told) are month ends on the grid with different days, since no grid without the rule meets both: a 30 June bond that
+pays on 31 December. Where nothing speaks for the rule, it does not apply.
 """
 
 from __future__ import annotations
 
 import re
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Any
 
 import numpy as np
@@ -165,17 +166,19 @@ def resolve(
     unknown_calendars: Mapping[str, str],
     rates: tuple[Array, Array, Array],
     factors: tuple[Array, Array, Array],
+    currency_needed: bool = True,
 ) -> tuple[Terms, list[Fault]]:
     """The terms of every bond, and what is wrong with them.
 
     `told` has the columns of bonds.csv (records.BONDS without file and line): text as (codes, distinct texts), the rest numpy.
     `calendars` holds every calendar that `calendar_codes` names. `rates` and `factors` are (bond row, from, value) columns in any order.
+    Without `currency_needed` a bond that tells no currency counts in hundredths.
     """
     columns = _Columns(told, length)
     columns.market = columns.each("market", lambda t: m if (m := markets.number(t)) >= 0 else None, -1,
                                   "is not a market of the conventions table; correct it or tell the terms in full.").astype(np.int64)  # fmt: skip
     currency_codes, currency_texts = columns.text("currency", "currency")
-    _check_currency(columns, currency_codes, currency_texts)
+    _check_currency(columns, currency_codes, currency_texts, currency_needed)
     kind = columns.word("kind", KINDS, "fixed", "kind")
     ex_days, ex_unit = columns.spans("ex_dividend", "ex_dividend")
     record_days, record_unit = columns.spans("record", "record")
@@ -196,8 +199,11 @@ def resolve(
     if missing.any():
         columns.fault(np.flatnonzero(missing), "coupon_rate", "is blank; add the coupon rate in percent.")
     anchor = np.where(np.isnat(dates["last_regular_coupon"]), dates["maturity"], dates["last_regular_coupon"])
-    month_end = _month_ends(columns, anchor, dates["first_coupon"], pays)
+    month_end = _month_ends(columns, anchor, dates, frequency)
     rate_csr, factor_csr = _grouped(rates, length), _grouped(factors, length)
+    # a zero that tells a frequency pays nothing but compounds its yield that often
+    told_frequency = columns.whole("frequency")
+    compounding = np.where((kind == 0) & (told_frequency > 0), told_frequency, columns.whole("compounding", "compounding"))
     redemption = columns.whole("redemption_price_e12", "redemption_price_e12")
     cap = np.array([market.accrued_cap == "coupon" for market in markets.MARKETS] + [False])[columns.market]
     floor = np.array([market.floor_at_par for market in markets.MARKETS] + [False])[columns.market]
@@ -231,7 +237,7 @@ def resolve(
         rounding_down=rounding[2],
         accrued_cap=cap,
         floor_at_par=floor,
-        compounding=columns.whole("compounding", "compounding"),
+        compounding=compounding,
         sound=~columns.unsound,
         anchor=anchor,
         calendars=calendars,
@@ -255,9 +261,9 @@ def calendar_codes(told: Mapping[str, Any]) -> list[str]:
     return ["", *sorted(codes - {""})]
 
 
-def _check_currency(columns: _Columns, codes: Array, texts: Sequence[str]) -> None:
+def _check_currency(columns: _Columns, codes: Array, texts: Sequence[str], needed: bool) -> None:
     blank = codes < 0
-    if blank.any():
+    if needed and blank.any():
         columns.fault(np.flatnonzero(blank), "currency", "is blank and the market does not say it; add the currency.")
     unknown = np.array([not known_currency(text) for text in texts] + [False])[codes]
     if unknown.any():
@@ -325,13 +331,19 @@ def last_of_month(dates: Array) -> Array:
     return np.asarray((dates + 1).astype("datetime64[M]") != dates.astype("datetime64[M]"))
 
 
-def _month_ends(columns: _Columns, anchor: Array, first_coupon: Array, pays: Array) -> Array:
-    told = columns.word("end_of_month", ("no", "yes"), "", "end_of_month")
-    # Untold, the dates must speak: both month ends, on different days of the month, cannot be met without the rule.
-    day, first_day = civil(anchor)[2], civil(first_coupon)[2]
-    speak = last_of_month(anchor) & last_of_month(first_coupon) & (day != first_day)
-    applies = np.where(told < 0, speak, told == 1)
-    result: Array = applies & pays & last_of_month(anchor)
+def _month_ends(columns: _Columns, anchor: Array, dates: Mapping[str, Array], frequency: Array) -> Array:
+    told = columns.word("end_of_month", ("no", "yes"), "")
+    of_market = columns.word("end_of_month", ("no", "yes"), "", "end_of_month")
+    # Untold, the dates must speak: month ends on different days of the month cannot both be met without the rule. What
+    # the bond's own dates say goes before a market that says no.
+    other = np.where(np.isnat(dates["first_coupon"]), dates["accrual_start"], dates["first_coupon"])
+    step = 12 // np.maximum(frequency, 1)
+    year, month, day = civil(anchor)
+    other_year, other_month, other_day = civil(other)
+    on_grid = ((year - other_year) * 12 + month - other_month) % step == 0
+    speak = last_of_month(anchor) & last_of_month(other) & on_grid & (day != other_day)
+    applies = np.where(told < 0, speak | (of_market == 1), told == 1)
+    result: Array = applies & (frequency > 0) & last_of_month(anchor)
     return result
 
 
@@ -346,8 +358,6 @@ def _grouped(rows: tuple[Array, Array, Array], length: int) -> tuple[Array, Arra
 
 
 def _with_first_coupons(terms: Terms) -> Terms:
-    from dataclasses import replace
-
     from reconciler.bonds.schedules import grid_after
 
     pays = (terms.frequency > 0) & ~np.isnat(terms.accrual_start) & ~np.isnat(terms.maturity)
