@@ -138,7 +138,7 @@ def bank_dates(given: Given) -> Iterator[Found]:
     rows = given.allocations["item_row"]
     value = given.cash["value_date"][given.allocations["cash_row"]]
     expected = given.expected_date[rows]
-    off = ~np.isnat(value) & ~np.isnat(expected) & (value != expected) & ~given.bank_only[rows]
+    off = ~np.isnat(value) & ~np.isnat(expected) & (value != expected) & given.paid[rows]
     last = np.full(len(given), np.iinfo(np.int64).min)
     np.maximum.at(last, rows[off], value[off].astype(np.int64))
     told = last.view("datetime64[D]")  # int64 min is NaT
@@ -184,7 +184,7 @@ def _entry_breaks(given: Given, name: str) -> Iterator[Found]:
     """Account or currency of the entries that pay an item; of several wrong ones the alphabetically first."""
     rows, cash_rows = given.allocations["item_row"], given.allocations["cash_row"]
     theirs, mine = given.cash[name].take(cash_rows), given.items[name].take(rows)
-    off = np.flatnonzero(differs(theirs, mine) & ~given.bank_only[rows])
+    off = np.flatnonzero(differs(theirs, mine) & given.paid[rows])
     order = off[np.lexsort((theirs.rank()[off], rows[off]))] if len(off) else off
     at, first = np.unique(rows[order], return_index=True)
     yield _word_breaks(name, BANK, at, given.items[name].take(at), theirs.take(order[first]))

@@ -100,7 +100,12 @@ class Given:
         rows = self.allocations["item_row"]
         theirs, mine = self.cash["currency"].take(self.allocations["cash_row"]), self.items["currency"].take(rows)
         out[rows[differs(theirs, mine)]] = True
-        return out & ~self.bank_only
+        return out & self.paid
+
+    @functools.cached_property
+    def paid(self) -> Array:
+        """True for payments that entries pay; not where all of them were taken back again."""
+        return np.asarray((self.items["bank_minor"] != MISSING) & ~self.bank_only)
 
     @functools.cached_property
     def expected_date(self) -> Array:

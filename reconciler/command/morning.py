@@ -40,8 +40,8 @@ def run(arguments: argparse.Namespace) -> int:
     told = settings.read(arguments.settings) if arguments.settings is not None else settings.Settings()
     day = morning.run(arguments.folder, arguments.date, arguments.since, told)
     command.tell(day.problems)
-    if day.source.fatal:
-        return command.NOTHING
     morning.write(day, arguments.out)
     print(morning.summary_text(day))
+    if day.unread:
+        return command.NOTHING
     return command.BREAKS if len(day.breaks) else command.AGREES

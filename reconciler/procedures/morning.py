@@ -1,0 +1,279 @@
+"""A morning, from a folder of files to a ranked list of breaks, as one list of plain steps.
+
+`STEPS` is the whole of it, to be read aloud. Each step takes what is known so far and returns it with something added; none edits what
+it was given and none reaches back. The only turn is in the middle: where broker and desk tell different facts, the bank's cash may
+say which of them was dealt, so trades are reckoned again once the cash is paired.
+"""
+
+from __future__ import annotations
+
+import datetime
+from collections import Counter
+from collections.abc import Callable, Mapping
+from dataclasses import dataclass, field, replace
+from pathlib import Path
+from typing import Any
+
+import numpy as np
+import pyarrow as pa
+
+from reconciler.bonds.terms import Terms
+from reconciler.breaks import finding, ranking, stake
+from reconciler.breaks.given import Given
+from reconciler.expected import coupons, settlements
+from reconciler.expected.terms import resolve_terms
+from reconciler.exports import morning as files
+from reconciler.intake import folder as intake
+from reconciler.matching import cash as cash_matching
+from reconciler.matching import trades as trade_matching
+from reconciler.problems import KnownError, Problem
+from reconciler.procedures import totals as totals_of
+from reconciler.records import BREAK_KINDS, STATES, Table, Words, concat, unify
+from reconciler.settings import Settings
+from reconciler.texts import long_date
+
+Progress = Callable[[str, int, int], None]
+"""Told the step in words, how many steps are done and how many there are. May raise to stop the morning."""
+
+
+class Stopped(BaseException):
+    """The morning was stopped because `cancelled` said so."""
+
+
+@dataclass(frozen=True)
+class Day:
+    """A reconciled morning. `items`, `allocations` and `breaks` are tables of records.py; row i of `terms` is row i of the bonds."""
+
+    date: datetime.date
+    since: datetime.date
+    source: Any
+    settings: Settings
+    terms: Terms
+    items: Table
+    allocations: Table
+    breaks: Table
+    proposals: Table
+    problems: tuple[Problem, ...]
+    summary: Mapping[str, int] = field(default_factory=dict)
+    """How many items there are of each state."""
+
+    @property
+    def unread(self) -> tuple[str, ...]:
+        """Files that could not be read or recognised, so that what they tell is missing; a file without rows is not among them."""
+        hollow = {problem.file for problem in self.problems if problem.code == "header-only"}
+        return tuple(file.name for file in self.source.files if file.layout == "not read" and file.name not in hollow)
+
+
+@dataclass(frozen=True)
+class State:
+    """What the steps hand on; each fills in more of it."""
+
+    folder: Path
+    date: np.datetime64
+    since: np.datetime64
+    settings: Settings
+    layouts: tuple[Path, ...] = ()
+    source: Any = None
+    terms: Any = None
+    term_problems: tuple[Problem, ...] = ()
+    pairs: Any = None
+    trades: Any = None
+    payments: Any = None
+    paid: Any = None
+    items: Any = None
+    given: Any = None
+    breaks: Any = None
+
+
+def read(state: State) -> State:
+    """Reading the files"""
+    return replace(state, source=intake.read(state.folder, layouts_from=state.layouts))
+
+
+def resolve(state: State) -> State:
+    """Filling in the bonds' terms"""
+    source = state.source
+    terms, problems = resolve_terms(source.bonds, source.rates, source.factors, source.closings)
+    return replace(state, terms=terms, term_problems=tuple(problems))
+
+
+def pair_trades(state: State) -> State:
+    """Pairing tickets with confirmations"""
+    pairs = trade_matching.pair_trades(state.source.tickets, state.source.confirmations)
+    totals = totals_of.with_set_aside(state.source.totals, state.source.confirmations, pairs.set_aside)
+    return replace(state, pairs=pairs, source=replace(state.source, totals=totals))
+
+
+def expect_settlements(state: State) -> State:
+    """Reckoning what trades settle for"""
+    return replace(state, trades=_trades(state))
+
+
+def expect_payments(state: State) -> State:
+    """Reckoning coupons and redemptions"""
+    source = state.source
+    payments = coupons.expect_coupons(
+        state.terms, source.bonds, source.holdings, state.trades, state.since, state.date, state.pairs.repeats
+    )
+    return replace(state, payments=payments)
+
+
+def pair_cash(state: State) -> State:
+    """Pairing the bank's entries with payments"""
+    return _with_cash(state, concat([state.trades, state.payments]))
+
+
+def reckon_again(state: State) -> State:
+    """Reckoning disputed trades by the cash"""
+    count = len(state.trades)
+    bank = state.items.take(np.arange(count))
+    trades = _trades(state, bank["bank_minor"], bank["bank_date"])
+    if all(_equal(trades[name], state.trades[name]) for name in ("terms_minor", "terms_date", "face_minor", "side", "price_e12")):
+        return state
+    # what is held may change with the facts of a trade, and so may the entry that pays it
+    again = expect_payments(replace(state, trades=trades))
+    return _with_cash(again, concat([again.trades, again.payments]))
+
+
+def find_breaks(state: State) -> State:
+    """Finding breaks"""
+    items, breaks = finding.find_breaks(state.given)
+    return replace(state, items=items, breaks=breaks)
+
+
+def weigh(state: State) -> State:
+    """Weighing what is at stake"""
+    return replace(state, breaks=stake.weigh(state.given, state.breaks))
+
+
+def rank(state: State) -> State:
+    """Putting the most urgent first"""
+    return replace(state, breaks=ranking.rank(state.given, state.breaks))
+
+
+STEPS: tuple[Callable[[State], State], ...] = (
+    read,
+    resolve,
+    pair_trades,
+    expect_settlements,
+    expect_payments,
+    pair_cash,
+    reckon_again,
+    find_breaks,
+    weigh,
+    rank,
+)
+
+
+def _with_cash(state: State, payments: Table) -> State:
+    """The payments with what the bank paid, and everything the search for breaks looks at."""
+    source, pairs = state.source, state.pairs
+    paid = cash_matching.pair_cash(payments, source.cash, pairs.repeats)
+    items, allocations = cash_matching.with_bank(payments, source.cash, paid)
+    given = Given(
+        items, source.tickets, source.confirmations, source.cash, allocations, concat([pairs.repeats, paid.repeats]), state.terms,
+        _faults(state), state.date, state.settings, _accounts(source),
+    )  # fmt: skip
+    return replace(state, paid=paid, items=items, given=given)
+
+
+def _accounts(source: Any) -> pa.Array:
+    """The account names that the desk's own files use."""
+    return unify(source.tickets["account"], source.holdings["account"], source.cash["account"])[0].values
+
+
+def _trades(state: State, bank_minor: Any = None, bank_date: Any = None) -> Table:
+    source = state.source
+    return settlements.expect_trades(
+        state.terms, source.bonds, source.tickets, source.confirmations, state.pairs, bank_minor, bank_date
+    )
+
+
+def _equal(one: np.ndarray, other: np.ndarray) -> bool:
+    if one.dtype.kind == "M":
+        one, other = one.view(np.int64), other.view(np.int64)
+    return bool(np.array_equal(one, other))
+
+
+def _faults(state: State) -> Words:
+    """What is wrong with each bond's terms, blank where nothing is: of several faults the first."""
+    reasons = [""] * len(state.source.bonds)
+    row_of = {line: row for row, line in enumerate(state.source.bonds["line"].tolist())}
+    for problem in reversed(state.term_problems):
+        if problem.line in row_of:
+            named = f"{problem.column} '{problem.value}'" if problem.value else problem.column
+            reasons[row_of[problem.line]] = f"{named} {problem.reason.partition(' terms of ')[2].partition(' ')[2]}"
+    return Words.of(reasons)
+
+
+def run(
+    folder: Path,
+    date: datetime.date,
+    since: datetime.date | None = None,
+    settings: Settings | None = None,
+    progress: Progress | None = None,
+    cancelled: Callable[[], bool] | None = None,
+    layouts: tuple[Path, ...] = (),
+) -> Day:
+    """Reconciles a folder as of a date.
+
+    Coupons and redemptions are expected from `since` (default: so many weekdays before `date` as the settings say). `layouts` are
+    folders of layouts beside the morning's own and the shipped ones. Raises KnownError when nothing can be reconciled.
+    """
+    told = settings or Settings()
+    today = np.datetime64(date, "D")
+    first = np.datetime64(since, "D") if since is not None else np.busday_offset(today, -told["since_days"], roll="forward")
+    state = State(Path(folder), today, first, told, layouts)
+    for number, step in enumerate(STEPS):
+        if cancelled is not None and cancelled():
+            raise Stopped
+        if progress is not None:
+            progress(str(step.__doc__), number, len(STEPS))
+        state = step(state)
+    return _day(state)
+
+
+def _day(state: State) -> Day:
+    """The outcome, items in the order of their names."""
+    problems = tuple(sorted({*state.source.problems, *state.term_problems}))
+    source = replace(state.source, problems=problems)
+    order = np.argsort(state.items["item"].rank(), kind="stable")
+    place = np.empty(len(order), np.int64)
+    place[order] = np.arange(len(order))
+    items = state.items.take(order)
+    breaks = state.breaks.with_columns(item_row=place[state.breaks["item_row"]])
+    paid = state.given.allocations
+    allocations = paid.with_columns(item_row=place[paid["item_row"]])
+    proposals = state.paid.proposals.with_columns(item_row=place[state.paid.proposals["item_row"]])
+    counts = Counter(items["state"].to_list())
+    return Day(
+        date=state.date.astype(object), since=state.since.astype(object), source=source, settings=state.settings, terms=state.terms,
+        items=items, allocations=allocations, breaks=breaks, proposals=proposals, problems=problems, summary={name: counts[name] for name in STATES},
+    )  # fmt: skip
+
+
+def write(day: Day, out: Path) -> None:
+    """Writes items.csv, breaks.csv, rejects.csv and totals.csv into a folder, which is made if need be. Raises KnownError."""
+    try:
+        out.mkdir(parents=True, exist_ok=True)
+    except OSError as fault:
+        raise KnownError(f"The folder {out} cannot be made: {fault.strerror or fault}.") from fault
+    told = {"Broker": (day.source.confirmations["currency"], day.items["confirmation_row"]),
+            "Desk": (day.source.tickets["currency"], day.items["ticket_row"])}  # fmt: skip
+    files.write_items(out / "items.csv", day.items, told)
+    files.write_breaks(out / "breaks.csv", day.breaks)
+    files.write_rejects(out / "rejects.csv", day.source.rejects)
+    files.write_totals(out / "totals.csv", day.source.totals)
+
+
+def summary_text(day: Day) -> str:
+    """The morning in a few lines: how many payments agree, which breaks there are, whether the files tie out."""
+    count = len(day.items)
+    states = ", ".join(f"{day.summary[name]} {words}" for name, words in
+                       (("agrees", "agree"), ("within tolerance", "within tolerance"), ("due", "due today"), ("break", "with breaks")))  # fmt: skip
+    lines = [f"{long_date(np.datetime64(day.date))}: {count} payment{'' if count == 1 else 's'}, {states}."]
+    kinds = Counter(day.breaks["break"].to_list())
+    lines += [f"  {kinds[kind]:>7}  {kind}" for kind in BREAK_KINDS if kinds[kind]]
+    read, used, rejected, aside = (int(day.source.totals[f"rows_{name}"].sum()) for name in ("read", "used", "rejected", "set_aside"))
+    lines.append(f"{read} rows read: {used} used, {rejected} rejected, {aside} set aside.")
+    return "\n".join(lines)
