@@ -45,7 +45,7 @@ class CouponStrip(QWidget):
         self.setAccessibleName("Coupons of this bond")
         theme().changed.connect(self.update)
 
-    def sizeHint(self) -> QSize:  # noqa: N802
+    def sizeHint(self) -> QSize:
         return QSize(560, 106)
 
     def show_strip(self, strip: Strip) -> None:
@@ -54,7 +54,7 @@ class CouponStrip(QWidget):
         self.setAccessibleDescription(strip.words or ", ".join(w for w in (strip.marked_words, strip.accrued_words) if w))
         self.update()
 
-    def paintEvent(self, _event: QPaintEvent) -> None:  # noqa: N802
+    def paintEvent(self, _event: QPaintEvent) -> None:
         strip, look = self.strip, theme()
         if len(strip.boundaries) < 2:
             return
@@ -80,7 +80,7 @@ class CouponStrip(QWidget):
         self._ticks(painter, at, top, height)
         self._marks(painter, at, top, height)
 
-    def _ticks(self, painter: QPainter, at, top: float, height: float) -> None:  # type: ignore[no-untyped-def]  # noqa: ANN001
+    def _ticks(self, painter: QPainter, at, top: float, height: float) -> None:  # type: ignore[no-untyped-def]
         look = theme()
         painter.setFont(look.font("small"))
         metrics = QFontMetrics(look.font("small"))
@@ -95,7 +95,7 @@ class CouponStrip(QWidget):
                 painter.drawText(QPointF(x - half, top + height + 22), text)
                 taken = x + half
 
-    def _marks(self, painter: QPainter, at, top: float, height: float) -> None:  # type: ignore[no-untyped-def]  # noqa: ANN001
+    def _marks(self, painter: QPainter, at, top: float, height: float) -> None:  # type: ignore[no-untyped-def]
         strip, look = self.strip, theme()
         metrics = QFontMetrics(look.font("small", SEMIBOLD))
         painter.setFont(look.font("small", SEMIBOLD))
@@ -144,7 +144,7 @@ class CashLadder(QWidget):
         net = figures.amount(bar.received - bar.paid, bar.digits, signed=True)
         return f"{figures.date(bar.day)} {bar.currency} {net} from {figures.count(bar.payments, 'payment')}"
 
-    def paintEvent(self, _event: QPaintEvent) -> None:  # noqa: N802
+    def paintEvent(self, _event: QPaintEvent) -> None:
         if not self.bars:
             return
         look, painter = theme(), QPainter(self)

@@ -16,7 +16,7 @@ _MOST = 40  # words listed in one menu; what is rarer is found by searching
 class StayMenu(QMenu):
     """A menu that stays open while its words are ticked."""
 
-    def mouseReleaseEvent(self, event) -> None:  # type: ignore[no-untyped-def]  # noqa: N802, ANN001
+    def mouseReleaseEvent(self, event) -> None:  # type: ignore[no-untyped-def]
         action = self.activeAction()
         if action is not None and action.isCheckable():
             action.trigger()

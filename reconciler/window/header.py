@@ -44,7 +44,7 @@ class SearchBox(QLineEdit):
         """With many rows a short pause lets fast typing narrow once and not per letter."""
         self.pause = _PAUSE if rows > 100_000 else 0
 
-    def paintEvent(self, event: QPaintEvent) -> None:  # noqa: N802
+    def paintEvent(self, event: QPaintEvent) -> None:
         super().paintEvent(event)
         if not self.text() and not self.hasFocus():
             painter = QPainter(self)
@@ -53,7 +53,7 @@ class SearchBox(QLineEdit):
             right = Qt.AlignmentFlag.AlignRight | Qt.AlignmentFlag.AlignVCenter
             painter.drawText(self.rect().adjusted(0, 0, -16, 0), right, _FIND_KEY)
 
-    def keyPressEvent(self, event) -> None:  # type: ignore[no-untyped-def]  # noqa: N802, ANN001
+    def keyPressEvent(self, event) -> None:  # type: ignore[no-untyped-def]
         if event.key() == Qt.Key.Key_Escape:
             if self.text():
                 self.clear()
@@ -83,13 +83,13 @@ class NetCard(QAbstractButton):
         self.setCursor(Qt.CursorShape.PointingHandCursor)
         theme().changed.connect(self.update)
 
-    def sizeHint(self) -> QSize:  # noqa: N802
+    def sizeHint(self) -> QSize:
         look = theme()
         wide = QFontMetrics(look.font("body", SEMIBOLD)).horizontalAdvance(self.figure)
         narrow = QFontMetrics(look.font("small")).horizontalAdvance(f"{self.currency} net difference")
         return QSize(max(wide, narrow) + 26, 48)
 
-    def paintEvent(self, _event: QPaintEvent) -> None:  # noqa: N802
+    def paintEvent(self, _event: QPaintEvent) -> None:
         look = theme()
         painter = QPainter(self)
         painter.setRenderHint(QPainter.RenderHint.Antialiasing)
@@ -147,7 +147,7 @@ class Header(QWidget):
         self._bar = bar
         self._lower.addWidget(bar, 0, Qt.AlignmentFlag.AlignBottom)
 
-    def resizeEvent(self, event: QResizeEvent) -> None:  # noqa: N802
+    def resizeEvent(self, event: QResizeEvent) -> None:
         super().resizeEvent(event)
         self.fit_cards()
 

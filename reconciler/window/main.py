@@ -8,7 +8,6 @@ from __future__ import annotations
 
 import datetime
 from pathlib import Path
-from typing import Any
 
 from PySide6.QtCore import QByteArray, QSettings, QTimer
 from PySide6.QtGui import QCloseEvent, QDragEnterEvent, QDropEvent
@@ -31,7 +30,7 @@ from reconciler.window.widgets import action_button
 from reconciler.window.wording import fault_told, sentence
 
 NAME = "Reconciler"
-LAYOUT_CODES = ("unknown-layout", "ambiguous-layout", "ambiguous-dates", "missing-column")
+LAYOUT_CODES = ("missing-column", "ambiguous-column", "ambiguous-dates", "ambiguous-decimal", "unknown-broker", "no-header")
 """Codes of problems that assigning a file's columns can settle."""
 
 
@@ -177,7 +176,8 @@ class MainWindow(QMainWindow):
 
     def _can_assign(self) -> bool:
         """True when one of the problems is a confirmations file whose columns can be settled by hand."""
-        return any(isinstance(one, Problem) and one.code in LAYOUT_CODES for one in self.problems)
+        return any(isinstance(one, Problem) and one.code in LAYOUT_CODES and one.file.startswith("confirmations/")
+                   for one in self.problems)
 
     def _say_problems(self) -> None:
         if not self.problems:
@@ -195,11 +195,11 @@ class MainWindow(QMainWindow):
             self.problems = tuple(fault.problems)
         self.banner.say(f"{what} {told}", more=rest > 0, bad=True, assign=self._can_assign())
 
-    def dragEnterEvent(self, event: QDragEnterEvent) -> None:  # noqa: N802
+    def dragEnterEvent(self, event: QDragEnterEvent) -> None:
         if _dropped_folder(event) is not None:
             event.acceptProposedAction()
 
-    def dropEvent(self, event: QDropEvent) -> None:  # noqa: N802
+    def dropEvent(self, event: QDropEvent) -> None:
         folder = _dropped_folder(event)
         if folder is not None:
             event.acceptProposedAction()
@@ -253,7 +253,7 @@ class MainWindow(QMainWindow):
                 splitter.restoreState(state)
         self.actions_by_key[theme().choice].setChecked(True)
 
-    def closeEvent(self, event: QCloseEvent) -> None:  # noqa: N802
+    def closeEvent(self, event: QCloseEvent) -> None:
         kept = settings()
         kept.setValue("window/geometry", self.saveGeometry())
         for key, page in self.pages.items():

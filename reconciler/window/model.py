@@ -38,10 +38,10 @@ class SheetModel(QAbstractTableModel):
         self._rows = len(sheet.shown)
         self._pages: dict[int, list[list[Cell]]] = {}
 
-    def rowCount(self, parent: Index = _NOTHING) -> int:  # noqa: N802, B008
+    def rowCount(self, parent: Index = _NOTHING) -> int:
         return 0 if parent.isValid() else self._rows
 
-    def columnCount(self, parent: Index = _NOTHING) -> int:  # noqa: N802, B008
+    def columnCount(self, parent: Index = _NOTHING) -> int:
         return 0 if parent.isValid() else self._columns
 
     def cell(self, row: int, column: int) -> Cell:
@@ -63,7 +63,7 @@ class SheetModel(QAbstractTableModel):
             return f"{self.sheet.columns[index.column()].title}: {said}" if role == _SPOKEN else said
         return None
 
-    def headerData(self, section: int, orientation: Qt.Orientation, role: int = _DISPLAY) -> Any:  # noqa: N802
+    def headerData(self, section: int, orientation: Qt.Orientation, role: int = _DISPLAY) -> Any:
         if orientation != _ACROSS:
             return None
         role = int(role)

@@ -14,13 +14,13 @@ def static_sheet(heads: Sequence[tuple[str, int, bool, int]], rows: Sequence[Seq
     """A sheet of ready cells; heads are (title, width, right-aligned, stretch); width 0 is as wide as what it holds."""
     lines = [tuple(line) for line in rows]
 
-    def show(number: int):  # type: ignore[no-untyped-def]  # noqa: ANN202
+    def show(number: int):  # type: ignore[no-untyped-def]
         return lambda _data, at: [lines[i][number] for i in at.tolist()]
 
-    def rank(number: int):  # type: ignore[no-untyped-def]  # noqa: ANN202
+    def rank(number: int):  # type: ignore[no-untyped-def]
         return lambda _data: Words.of([line[number].text for line in lines]).rank().astype(np.int64)
 
-    def told(number: int):  # type: ignore[no-untyped-def]  # noqa: ANN202
+    def told(number: int):  # type: ignore[no-untyped-def]
         return lambda _data, at: Words.of([_copied(lines[i][number]) for i in at.tolist()])
 
     columns = [

@@ -12,7 +12,14 @@ from typing import Any
 import numpy as np
 from PySide6.QtCore import QItemSelection, QItemSelectionModel, QModelIndex, QPoint, QRect, QSize, Qt, Signal
 from PySide6.QtGui import QFontMetrics, QGuiApplication, QKeyEvent, QMouseEvent, QPainter, QResizeEvent
-from PySide6.QtWidgets import QAbstractItemView, QHeaderView, QStyledItemDelegate, QStyleOptionViewItem, QTableView, QWidget
+from PySide6.QtWidgets import (
+    QAbstractItemView,
+    QHeaderView,
+    QStyledItemDelegate,
+    QStyleOptionViewItem,
+    QTableView,
+    QWidget,
+)
 
 from reconciler.window import tokens
 from reconciler.window.copying import as_text
@@ -20,7 +27,6 @@ from reconciler.window.model import SheetModel
 from reconciler.window.painting import PADDING, paint_cell
 from reconciler.window.sheet import Cell, Sheet
 from reconciler.window.theme import SEMIBOLD, theme
-
 
 
 class CellDelegate(QStyledItemDelegate):
@@ -38,7 +44,7 @@ class CellDelegate(QStyledItemDelegate):
         paint_cell(painter, option.rect, model.cell(row, number), model.sheet.columns[number], first=number == 0,
                    selected=selected, hovered=row == view.hovered, focused=view.hasFocus())  # fmt: skip
 
-    def sizeHint(self, _option: QStyleOptionViewItem, index: Any) -> QSize:  # noqa: N802
+    def sizeHint(self, _option: QStyleOptionViewItem, index: Any) -> QSize:
         cell = self.view.model().cell(index.row(), index.column())
         return QSize(cell_width(cell), self.view.row_height)
 
@@ -64,7 +70,7 @@ class Head(QHeaderView):
         self.setFixedHeight(tokens.HEAD)
         self.setAccessibleName("Column heads")
 
-    def paintSection(self, painter: QPainter, rect: QRect, number: int) -> None:  # noqa: N802
+    def paintSection(self, painter: QPainter, rect: QRect, number: int) -> None:
         look, sheet = theme(), self.view.model().sheet
         column = sheet.columns[number]
         painter.fillRect(rect, look.colour("surface"))
@@ -134,7 +140,7 @@ class SheetView(QTableView):
         """The model, with its own type."""
         return super().model()  # type: ignore[return-value]
 
-    def currentChanged(self, current: Any, previous: Any) -> None:  # noqa: N802
+    def currentChanged(self, current: Any, previous: Any) -> None:
         super().currentChanged(current, previous)
         row = self.model().row_at(current.row()) if current.isValid() else -1
         if row != self._base_row and row >= 0:
@@ -213,11 +219,11 @@ class SheetView(QTableView):
             widths.append(wide)
         return widths
 
-    def resizeEvent(self, event: QResizeEvent) -> None:  # noqa: N802
+    def resizeEvent(self, event: QResizeEvent) -> None:
         super().resizeEvent(event)
         self.share_width()
 
-    def keyPressEvent(self, event: QKeyEvent) -> None:  # noqa: N802
+    def keyPressEvent(self, event: QKeyEvent) -> None:
         if event.key() in (Qt.Key.Key_Return, Qt.Key.Key_Enter) and self.current_row() >= 0:
             self.opened.emit(self.current_row())
         elif event.key() == Qt.Key.Key_Home and self.model().rowCount():
@@ -229,12 +235,12 @@ class SheetView(QTableView):
         else:
             super().keyPressEvent(event)
 
-    def leaveEvent(self, event: Any) -> None:  # noqa: N802
+    def leaveEvent(self, event: Any) -> None:
         self.hovered = -1
         self.viewport().update()
         super().leaveEvent(event)
 
-    def mouseMoveEvent(self, event: QMouseEvent) -> None:  # noqa: N802
+    def mouseMoveEvent(self, event: QMouseEvent) -> None:
         if not self.indexAt(event.position().toPoint()).isValid() and self.hovered >= 0:
             self.hovered = -1
             self.viewport().update()

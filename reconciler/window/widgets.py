@@ -31,18 +31,18 @@ class ShortLabel(QLabel):
         self.setTextFormat(Qt.TextFormat.PlainText)
         self._whole = ""
 
-    def setText(self, text: str) -> None:  # noqa: N802
+    def setText(self, text: str) -> None:
         self._whole = text
         self.setAccessibleName(text)
         self._shorten()
 
-    def minimumSizeHint(self) -> QSize:  # noqa: N802
+    def minimumSizeHint(self) -> QSize:
         return QSize(40, super().minimumSizeHint().height())
 
-    def sizeHint(self) -> QSize:  # noqa: N802
+    def sizeHint(self) -> QSize:
         return QSize(self.fontMetrics().horizontalAdvance(self._whole) + 4, super().sizeHint().height())
 
-    def resizeEvent(self, event: QResizeEvent) -> None:  # noqa: N802
+    def resizeEvent(self, event: QResizeEvent) -> None:
         super().resizeEvent(event)
         self._shorten()
 

@@ -10,13 +10,13 @@ import pytest
 
 os.environ.setdefault("QT_QPA_PLATFORM", "offscreen")
 
-from PySide6.QtCore import QSettings  # noqa: E402
+from PySide6.QtCore import QSettings
 
-from reconciler.window import jobs  # noqa: E402
-from reconciler.window.loading import Loaded, arrange  # noqa: E402
-from reconciler.window.main import MainWindow  # noqa: E402
-from reconciler.window.theme import theme  # noqa: E402
-from tests.window import fabricated  # noqa: E402
+from reconciler.window import jobs
+from reconciler.window.loading import Loaded, arrange
+from reconciler.window.main import MainWindow
+from reconciler.window.theme import theme
+from tests.window import fabricated
 
 
 @pytest.fixture(autouse=True)
@@ -41,7 +41,7 @@ def loaded() -> Loaded:
 
 
 @pytest.fixture()
-def window(qtbot, loaded: Loaded, made_up_working: None) -> Iterator[MainWindow]:  # type: ignore[no-untyped-def]  # noqa: ANN001
+def window(qtbot, loaded: Loaded, made_up_working: None) -> Iterator[MainWindow]:  # type: ignore[no-untyped-def]
     """A window that shows the small morning."""
     theme().start("light")
     made = MainWindow()

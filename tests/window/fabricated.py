@@ -172,7 +172,7 @@ def day(agreeing: int = 40, broken: bool = True, problems: tuple[Problem, ...] =
     )  # fmt: skip
     ticket_rows = np.cumsum([bool(n) for n in names]) - 1
     confirmation_rows = np.cumsum([r[11] != MISSING for r in rows]) - 1
-    entry_of = dict((i, str(88121 + i)) for i, _ in paid)
+    entry_of = {i: str(88121 + i) for i, _ in paid}
     items = records.table(
         records.ITEMS, item=[r[0] for r in rows], kind=[r[1] for r in rows], account=[r[2] for r in rows],
         bond=[BONDS[r[3]][0] if r[3] >= 0 else "" for r in rows], currency=[r[4] for r in rows], ticket=names,

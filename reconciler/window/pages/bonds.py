@@ -71,7 +71,7 @@ class BondsPage(Page):
             return True
         return super().back()
 
-    def showEvent(self, event: QShowEvent) -> None:  # noqa: N802
+    def showEvent(self, event: QShowEvent) -> None:
         super().showEvent(event)
         self._show_bond(self._row)
 
