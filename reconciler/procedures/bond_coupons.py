@@ -88,24 +88,31 @@ def strip_around(terms: Terms, bond: int, item: dict[str, Any]) -> Strip:
     return Strip(tuple(shown), accrued, day, f"{verb} {long_date(day)}", words, following if following < len(shown) - 1 else -1)
 
 
+def coupon_table(terms: Terms, bond_row: int, face_minor: int) -> Table:
+    """All coupons of one bond on a face (schema COUPONS), oldest first."""
+    coupons = schedules.all_coupons(terms, np.array([bond_row]))
+    rows, dates = coupons.bond_row, coupons.unadjusted
+    periods = schedules.period_ending(terms, rows, dates)
+    whys = [why_moved(terms, bond_row, one, paid) for one, paid in zip(dates, coupons.payment_date, strict=True)]
+    face = np.full(len(rows), face_minor, np.int64)
+    return table(
+        COUPONS, start=periods.start, end=dates, payment_date=coupons.payment_date, why=Words.of(whys),
+        days=coupon_days(terms, rows, periods), ex_date=schedules.ex_dates(terms, rows, dates),
+        record_date=schedules.record_dates(terms, rows, dates), face_minor=face,
+        amount_minor=accrual.coupon_amounts(terms, rows, dates, face),
+    )  # fmt: skip
+
+
 def bond_coupons(day: Day, bond_row: int, item_row: int = -1) -> Coupons:
     """All coupons of the bond in row `bond_row` of the day's bonds, on the item's face (100 when no item is looked at)."""
     terms = day.terms
     digits = int(terms.currency_digits[bond_row])
     item = day.items.row(item_row) if item_row >= 0 else None
     face = 100 * 10**digits if item is None or item["face_minor"] == MISSING else abs(int(item["face_minor"]))
-    coupons = schedules.all_coupons(terms, np.array([bond_row]))
-    rows, dates = coupons.bond_row, coupons.unadjusted
-    if not len(rows):
-        return Coupons(table(COUPONS), strip_around(terms, bond_row, item) if item else Strip(), digits)
-    periods = schedules.period_ending(terms, rows, dates)
-    whys = [why_moved(terms, bond_row, one, paid) for one, paid in zip(dates, coupons.payment_date, strict=True)]
-    listed = table(
-        COUPONS, start=periods.start, end=dates, payment_date=coupons.payment_date, why=Words.of(whys),
-        days=coupon_days(terms, rows, periods), ex_date=schedules.ex_dates(terms, rows, dates),
-        record_date=schedules.record_dates(terms, rows, dates), face_minor=np.full(len(rows), face),
-        amount_minor=accrual.coupon_amounts(terms, rows, dates, np.full(len(rows), face)),
-    )  # fmt: skip
+    listed = coupon_table(terms, bond_row, face)
+    if not len(listed):
+        return Coupons(listed, strip_around(terms, bond_row, item) if item else Strip(), digits)
+    dates = listed["end"]
     return Coupons(listed, strip_around(terms, bond_row, item) if item else _strip_today(day, terms, bond_row), digits,
                    _shown(item, dates))  # fmt: skip
 
