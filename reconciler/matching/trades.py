@@ -66,13 +66,23 @@ class _Pairing:
         self.facts: Facts = facts_of(tickets, confirmations)
         self.of_ticket = np.full(len(tickets), -1, np.int64)
         self.of_confirmation = np.full(len(confirmations), -1, np.int64)
-        self.given = given
+        self.given = self.stands = given
         self.desk_order: Order = content_order(tickets, _ORDER)
         self.broker_order: Order = content_order(confirmations, _ORDER)
 
     def open(self, allowed: Array) -> Pairs:
         """Rows of tickets (out of `allowed`) and of confirmations that nobody has yet."""
         return np.flatnonzero(allowed & (self.of_ticket < 0)), np.flatnonzero(self.given & (self.of_confirmation < 0))
+
+    def set_repeats_aside(self) -> None:
+        """Confirmations that tell the broker and reference of a paired one repeat it: they answer no other, unlike ticket."""
+        told = self.given & self.confirmations["broker_reference"].known()
+        key = keys.mixed((keys.whole(self.confirmations["broker"]), keys.whole(self.confirmations["broker_reference"])))
+        open_rows = np.flatnonzero(told & (self.of_confirmation < 0))
+        paired = np.flatnonzero(told & (self.of_confirmation >= 0))
+        if len(open_rows) and len(paired):
+            self.given = self.given.copy()
+            self.given[open_rows[np.isin(key[open_rows], key[paired])]] = False
 
     def take(self, pairs: Pairs) -> None:
         """Keeps the pairs (rows of the tables)."""
@@ -95,7 +105,7 @@ def pair_trades(tickets: Table, confirmations: Table) -> TradePairs:
 
 
 def _result(work: _Pairing, active: Array) -> TradePairs:
-    left = np.flatnonzero(work.given & (work.of_confirmation < 0))
+    left = np.flatnonzero(work.stands & (work.of_confirmation < 0))
     again, of_confirmation = repeated_confirmations(work.confirmations, work.facts.broker, work.of_confirmation, left)
     twice, of_ticket = repeated_tickets(work.tickets, work.facts.desk, work.of_ticket, active)
     lone = np.setdiff1d(left, again, assume_unique=True)
@@ -108,7 +118,7 @@ def _result(work: _Pairing, active: Array) -> TradePairs:
         confirmation_row=np.concatenate((work.of_ticket[mine], work.of_ticket[void], lone)),
         cancelled_row=np.concatenate((none(len(mine), -1), void, none(len(lone), -1))),
         repeats=Table({"kind": kinds, "row": np.concatenate((twice, again)), "of_row": np.concatenate((of_ticket, of_confirmation))}),
-        set_aside=np.flatnonzero(~work.given),
+        set_aside=np.flatnonzero(~work.stands),
         quiet=np.flatnonzero(~active & (work.of_ticket < 0)),
     )
 
@@ -204,6 +214,7 @@ _MUST = "broker"
 
 def _with_differences(work: _Pairing, allowed: Array) -> None:
     """One or two facts differ or are untold, and no other row of either side fits as well; then by likeness."""
+    work.set_repeats_aside()
     stages: list[tuple[str, ...]] = [tuple(n for n in (*DEALT, "amount") if n != off) for off in _ONE_OFF]
     stages += [tuple(n for n in DEALT if n != off) for off in _ONE_OFF]
     stages += [tuple(n for n in (*DEALT, "amount") if n not in off) for off in _TWO_OFF]
