@@ -18,7 +18,7 @@ import numpy as np
 import pyarrow as pa
 
 from reconciler.bonds.terms import Terms
-from reconciler.breaks import finding, ranking, stake
+from reconciler.breaks import causes, finding, ranking, stake
 from reconciler.breaks.given import Given
 from reconciler.expected import coupons, settlements
 from reconciler.expected.terms import resolve_terms
@@ -53,6 +53,8 @@ class Day:
     allocations: Table
     breaks: Table
     proposals: Table
+    explanations: Table
+    """Everything that fits each break (schema causes.EXPLANATIONS); `break_row` is the row of `breaks`."""
     problems: tuple[Problem, ...]
     summary: Mapping[str, int] = field(default_factory=dict)
     """How many items there are of each state."""
@@ -83,6 +85,7 @@ class State:
     items: Any = None
     given: Any = None
     breaks: Any = None
+    explanations: Any = None
 
 
 def read(state: State) -> State:
@@ -151,6 +154,15 @@ def rank(state: State) -> State:
     return replace(state, breaks=ranking.rank(state.given, state.breaks))
 
 
+def name_causes(state: State) -> State:
+    """Searching for causes"""
+    source, given = state.source, state.given
+    breaks, explanations = causes.name_causes(
+        state.items, source.tickets, source.confirmations, state.terms, state.breaks, given.digits
+    )
+    return replace(state, breaks=breaks, explanations=explanations)
+
+
 STEPS: tuple[Callable[[State], State], ...] = (
     read,
     resolve,
@@ -162,6 +174,7 @@ STEPS: tuple[Callable[[State], State], ...] = (
     find_breaks,
     weigh,
     rank,
+    name_causes,
 )
 
 
@@ -248,7 +261,8 @@ def _day(state: State) -> Day:
     counts = Counter(items["state"].to_list())
     return Day(
         date=state.date.astype(object), since=state.since.astype(object), source=source, settings=state.settings, terms=state.terms,
-        items=items, allocations=allocations, breaks=breaks, proposals=proposals, problems=problems, summary={name: counts[name] for name in STATES},
+        items=items, allocations=allocations, breaks=breaks, proposals=proposals,
+        explanations=state.explanations, problems=problems, summary={name: counts[name] for name in STATES},
     )  # fmt: skip
 
 

@@ -52,6 +52,8 @@ class Cases:
     bond_row: np.ndarray
     coupon_date: np.ndarray
     digits: np.ndarray
+    broker_amount: np.ndarray
+    desk_amount: np.ndarray
     terms: Told
     told: Told
 
@@ -104,6 +106,8 @@ def _cases(
         bond_row=item["bond_row"].astype(np.int64),
         coupon_date=item["coupon_date"],
         digits=digits[item_row],
+        broker_amount=item["broker_minor"],
+        desk_amount=item["desk_minor"],
         terms=_of_terms(item),
         told=_of_party(item, tickets, confirmations, party),
     )

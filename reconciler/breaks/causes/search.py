@@ -13,15 +13,16 @@ from typing import Any
 
 import numpy as np
 
+from reconciler.bonds.daycounts import NUMBERS
 from reconciler.bonds.terms import Terms
 from reconciler.breaks.causes import reckoning, slips
 from reconciler.breaks.causes.accruals import ACCRUALS, DAY_COUNT, ONE_DAY, TO_TRADE
-from reconciler.breaks.causes.cases import TRADE, Cases
+from reconciler.breaks.causes.cases import BANK, TRADE, Cases
 from reconciler.breaks.causes.judging import LOOSE, accidental
 from reconciler.breaks.causes.readings import READINGS
 from reconciler.breaks.causes.reckoning import Facts
 from reconciler.breaks.causes.variants import FACE, FEES, WHOLE, Cause, Payment, Variant, sums
-from reconciler.money import MISSING
+from reconciler.money import MISSING, half_up
 
 Array = np.ndarray[Any, Any]
 Hypothesis = tuple[Variant, ...]
@@ -39,6 +40,10 @@ PRICES: tuple[Variant, ...] = tuple(
 
 UNSCALED = Cause("factor ignored", "face", "Quote the factor and its date.", 0.8)
 OLD_FACTOR = Cause("factor of another date", "face", "Load the factor in force.", 0.6)
+BY_BROKER = Cause("paid as the broker confirmed", "as told by another", "Settle it with the broker first; the bank followed the confirmation.", 2.0)
+BY_DESK = Cause("paid as our ticket says", "as told by another", "Put the ticket right; the bank followed it.", 2.0)
+DISCOUNT = Cause("discount taken for a yield", "price", "Say whether the rate is a discount or a yield.", 0.8)
+BASIS = Cause("another basis of days", "day count", "Quote the basis of the market, 360 or 365.", 0.7)
 FOLLOWS = Cause("follows from the facts told", "told facts", "Settle the fact that differs; the amount follows from it.", 1.0)
 
 
@@ -145,8 +150,10 @@ def singles(search: Search) -> Iterator[tuple[Variant, Payment]]:
         yield variant, reckoning.pay(facts, base.principal, variant.make(facts))  # type: ignore[arg-type]
     plain_price = facts.terms.quote[facts.bond_row] < 2
     for variant in PRICES:
-        price = np.where(plain_price & (facts.kind == TRADE), variant.make(facts.price), MISSING)
+        price = np.where(plain_price & (facts.kind == TRADE), np.asarray(variant.make(facts.price)), MISSING)
         yield variant, reckoning.pay(facts.changed(price=price), None, interest)
+    for variant, main in _discounts(facts):
+        yield variant, reckoning.pay(facts, main, interest)
     for variant in FACE:
         face = np.asarray(variant.make(facts.face))
         safe = np.where(face == MISSING, 0, face)
@@ -157,6 +164,43 @@ def singles(search: Search) -> Iterator[tuple[Variant, Payment]]:
         yield variant, _with_fees(base, np.asarray(variant.make(base)))
     for variant in WHOLE:
         yield variant, base.changed(amount=np.asarray(variant.make(base, search.cases.digits)))
+
+
+def _discounts(facts: Facts) -> Iterator[tuple[Variant, Array]]:
+    """Principal of bills whose discount was read as a yield, or reckoned on the other basis."""
+    bills = (facts.terms.quote[facts.bond_row] == 2) & (facts.kind == TRADE) & (facts.price != MISSING)
+    if not bills.any():
+        return
+    at = np.flatnonzero(bills)
+    days = (facts.terms.maturity[facts.bond_row[at]] - facts.date[at]).astype(np.int64)
+    own = np.where(facts.terms.day_count[facts.bond_row[at]] == NUMBERS["Act/365F"], 365, 360)
+    right = reckoning.principal(facts)
+
+    def with_principal(found: Array) -> Array:
+        out = right.copy()
+        out[at] = found
+        return out
+
+    hundred = 100 * 10**9
+    rate = half_up([facts.price[at]], [1000])
+    for basis, words in ((own, ""), (725 - own, " on the other basis of days")):
+        whole = hundred * basis
+        found = half_up([facts.face[at], whole], [whole + rate * days])
+        yield Variant(DISCOUNT, "price", "the rate is taken for a yield" + words, lambda p: p), with_principal(found)
+    other = hundred * (725 - own)
+    yield Variant(BASIS, "price", "the discount is reckoned on the other basis of days", lambda p: p), with_principal(
+        half_up([facts.face[at], other - rate * days], [other])
+    )
+
+
+def _as_told_by_another(search: Search) -> None:
+    """The bank paid what the broker or the desk told, not what the terms say."""
+    cases, base = search.cases, search.base
+    for cause, told, words in (
+        (BY_BROKER, cases.broker_amount, "the broker's figure is paid"), (BY_DESK, cases.desk_amount, "our ticket's figure is paid"),
+    ):  # fmt: skip
+        variant = Variant(cause, "whole", words, lambda p: p)
+        search.try_out((variant,), base.changed(amount=told), (cases.party == BANK) & (told != MISSING) & (told != base.amount))
 
 
 def _void(payment: Payment, where: Array) -> Payment:
@@ -215,6 +259,7 @@ def run(cases: Cases, terms: Terms) -> list[tuple[Array, Search, Array]]:
 
 def _search(search: Search) -> Array:
     search.try_out((Variant(FOLLOWS, "told", "the facts are as told", lambda p: p),), search.base, _told_differs(search))
+    _as_told_by_another(search)
     done = []
     for variant, payment in singles(search):
         search.try_out((variant,), payment, search.kinds(variant) & _differs(payment, search.base))

@@ -77,11 +77,11 @@ class Slip:
 
 
 SLIPS: tuple[Slip, ...] = (
-    Slip("two digits exchanged", "two neighbouring digits exchanged", exchanged, tuple(range(PLACES - 1)), 0.30),
-    Slip("digit left out", "one digit left out", dropped, tuple(range(PLACES)), 0.20),
-    Slip("digit typed twice", "one digit typed twice", doubled, tuple(range(PLACES)), 0.15),
-    Slip("decimal point moved", "the decimal point moved", point_moved, (1, 2, 3, 4, 5, 6, -1, -2, -3, -4, -5, -6), 0.20),
-    Slip("sign lost", "the sign lost", sign_lost, (0,), 0.15),
+    Slip("two digits exchanged", "two neighbouring digits are exchanged", exchanged, tuple(range(PLACES - 1)), 0.30),
+    Slip("digit left out", "one digit is left out", dropped, tuple(range(PLACES)), 0.20),
+    Slip("digit typed twice", "one digit is typed twice", doubled, tuple(range(PLACES)), 0.15),
+    Slip("decimal point moved", "the decimal point has moved", point_moved, (1, 2, 3, 4, 5, 6, -1, -2, -3, -4, -5, -6), 0.20),
+    Slip("sign lost", "the sign is lost", sign_lost, (0,), 0.15),
 )
 
 

@@ -109,7 +109,7 @@ TAX_ONLY = Cause("tax paid back", "tax", "Link the entry to the payment it was w
 DENOMINATION = Cause("rounded per denomination", "rounding", "Agree the rounding rule of the paying agent.", 0.4)
 CHARGE = Cause("bank charge deducted", "charge", "Ask for the advice of charges; book it or claim it back.", 0.15)
 
-TAX_RATES = (5.0, 10.0, 12.5, 15.0, 15.315, 19.0, 20.0, 25.0, 26.375, 27.5, 28.0, 30.0, 35.0)
+TAX_RATES = (5.0, 10.0, 12.0, 12.5, 15.0, 15.315, 18.0, 19.0, 20.0, 24.0, 25.0, 26.0, 26.375, 27.5, 28.0, 30.0, 35.0)
 """Statutory and treaty rates met in practice, percent (facts of the trade; common practice, no source)."""
 
 CHARGES = (5, 10, 12, 15, 20, 25, 30, 35, 40, 50)
@@ -140,10 +140,13 @@ def _cut(p: Payment) -> np.ndarray:
     return np.where(p.amount == MISSING, MISSING, p.amount - np.sign(p.amount))
 
 
-def _withheld(rate: float, kept: bool) -> Callable[[Payment], np.ndarray]:
+def _withheld(rate: float, kept: bool, net: bool = False) -> Callable[[Payment], np.ndarray]:
+    """What is left of the amount (or what is taken, not `kept`); with `net` the rest is rounded, not the tax."""
     thousandths = round(rate * 1000)
 
     def whole(p: Payment) -> np.ndarray:
+        if net:
+            return half_up([p.amount, 100_000 - thousandths], [100_000])
         tax = half_up([p.amount, thousandths], [100_000])
         return np.where(p.amount == MISSING, MISSING, p.amount - tax if kept else tax)
 
@@ -185,6 +188,7 @@ WHOLE: tuple[Variant, ...] = (
                 1.0 if rate in (10.0, 15.0, 20.0, 25.0, 30.0, 35.0) else 0.6)
         for rate in TAX_RATES
     ),
+    *(Variant(TAX, "whole", f"{rate:g} % tax is withheld", _plain(_withheld(rate, True, True)), _INCOME, 0.5) for rate in TAX_RATES),
     *(Variant(TAX_ONLY, "whole", f"{rate:g} % tax is paid back", _plain(_withheld(rate, False)), _INCOME) for rate in TAX_RATES),
     *(Variant(CHARGE, "whole", f"a charge of {c} is taken off", _charged(c), _ALL) for c in CHARGES),
 )  # fmt: skip
