@@ -75,7 +75,7 @@ class Studio:
             if self.readme:
                 self._load()
                 self._page("breaks", "working", size=WIDE)
-                self._save(f"window-{name}", self.window, plain=True)
+                self._save(f"window-{name}", self.window)
                 continue
             for title, prepare in self._states():
                 whole = f"{title}-{name}-{self.scale}"
@@ -105,13 +105,12 @@ class Studio:
         if self.scale == "100":
             yield "large", self._large
 
-    def _save(self, name: str, widget: Any, plain: bool = False) -> None:
+    def _save(self, name: str, widget: Any) -> None:
         for _round in range(4):
             self.application.processEvents()
         picture = widget.grab()
-        widget_name = name if plain else name
-        picture.save(str(self.folder / f"{widget_name}.png"))
-        print(f"{widget_name}.png", flush=True)
+        picture.save(str(self.folder / f"{name}.png"))
+        print(f"{name}.png", flush=True)
         if widget is not self.window:
             widget.close()
 

@@ -22,7 +22,8 @@ def run(folder: Path | None = None, date: datetime.date | None = None) -> int:
     assert isinstance(application, QApplication)
     application.setApplicationName("Reconciler")
     application.setApplicationVersion(__version__)
-    from reconciler.window.main import MainWindow, settings
+    from reconciler.window.main import MainWindow
+    from reconciler.window.recent import settings
     from reconciler.window.theme import theme
 
     theme().start(str(settings().value("window/colours", "system")))

@@ -21,9 +21,8 @@ if TYPE_CHECKING:
 
 def _open(window: MainWindow) -> None:
     from reconciler.window.dialogs.open_morning import OpenMorning
-    from reconciler.window.main import settings
 
-    before = [(path, day) for path, day in recent.mornings(settings()) if path.is_dir()]
+    before = [(path, day) for path, day in recent.mornings(recent.settings()) if path.is_dir()]
     dialog = OpenMorning(window, window.loaded.folder if window.loaded else None, before)
     if dialog.exec() and dialog.folder is not None:
         window.load(dialog.folder, dialog.date)
@@ -132,18 +131,16 @@ def _split(window: MainWindow) -> None:
 
 
 def _colours(choice: str) -> Callable[[MainWindow], None]:
-    def choose(_window: MainWindow) -> None:
-        from reconciler.window.main import choose_theme
-
-        choose_theme(choice)
+    def choose(window: MainWindow) -> None:
+        theme().choose(choice)
+        recent.settings().setValue("window/colours", theme().choice)
+        window.actions_by_key[theme().choice].setChecked(True)
 
     return choose
 
 
-def _theme(_window: MainWindow) -> None:
-    from reconciler.window.main import choose_theme
-
-    choose_theme("light" if theme().palette.name == "dark" else "dark")
+def _theme(window: MainWindow) -> None:
+    _colours("light" if theme().palette.name == "dark" else "dark")(window)
 
 
 def _keys(window: MainWindow) -> None:

@@ -39,9 +39,13 @@ class Loaded:
 
 def load(folder: Path, date: datetime.date, progress: Progress) -> Loaded:
     """Runs the morning of a folder and prepares its lists; raises KnownError when nothing can be reconciled."""
+    from reconciler import settings
     from reconciler.procedures import ahead, morning
 
-    day = morning.run(folder, date, progress=lambda step, done=0, total=0: progress(step, done, total))
+    # asked for by the way, so that a cancelled load stops at the next step
+    told = settings.of_user()
+    day = morning.run(folder, date, settings=told, progress=lambda step, done, every: progress(f"{step} · step {done + 1} of {every}", 0, 0),
+                      layouts=(settings.user_folder() / "layouts",))  # fmt: skip
     progress("Looking ahead", 0, 0)
     return arrange(folder, day, ahead.ahead(day))
 

@@ -29,14 +29,8 @@ from reconciler.window.welcome import Welcome
 from reconciler.window.widgets import action_button
 from reconciler.window.wording import fault_told, sentence
 
-NAME = "Reconciler"
 LAYOUT_CODES = ("missing-column", "ambiguous-column", "ambiguous-dates", "ambiguous-decimal", "unknown-broker", "no-header")
 """Codes of problems that assigning a file's columns can settle."""
-
-
-def settings() -> QSettings:
-    """Where the window remembers things."""
-    return QSettings(QSettings.Format.IniFormat, QSettings.Scope.UserScope, NAME, NAME)
 
 
 class MainWindow(QMainWindow):
@@ -48,7 +42,7 @@ class MainWindow(QMainWindow):
         self.job: jobs.Job | None = None
         self.problems: tuple[Problem | str, ...] = ()
         self._wanted: tuple[Path, datetime.date] | None = None
-        self.setWindowTitle(NAME)
+        self.setWindowTitle(recent.NAME)
         self.setWindowIcon(icon("reconciler", size=64))
         self.setMinimumSize(960, 600)
         self.setAcceptDrops(True)
@@ -104,7 +98,7 @@ class MainWindow(QMainWindow):
     def open_at_start(self, folder: Path | None = None, date: datetime.date | None = None) -> None:
         """Loads the folder given, else the last morning, else the latest sample, else invites."""
         if folder is None:
-            folder, date = next(((path, day) for path, day in recent.mornings(settings()) if path.is_dir()), (None, None))
+            folder, date = next(((path, day) for path, day in recent.mornings(recent.settings()) if path.is_dir()), (None, None))
         if folder is None:
             samples = loading.sample_mornings()
             folder = samples[-1] if samples else None
@@ -165,9 +159,9 @@ class MainWindow(QMainWindow):
         foot = [loaded.folder.name if loaded.folder else "", figures.count(files, "file"),
                 f"{figures.count(rejected, 'row')} rejected" if rejected else "no row rejected"]  # fmt: skip
         self.sidebar.show_day(day.date, "\n".join(part for part in foot if part))
-        self.setWindowTitle(f"{figures.long_date(day.date)} – {NAME}")
+        self.setWindowTitle(f"{figures.long_date(day.date)} – {recent.NAME}")
         if loaded.folder is not None:
-            recent.remember(settings(), loaded.folder, figures.iso(day.date))
+            recent.remember(recent.settings(), loaded.folder, figures.iso(day.date))
         self._say_problems()
         self._enable()
         current = self.stack.currentWidget()
@@ -242,7 +236,7 @@ class MainWindow(QMainWindow):
     # --- remembering
 
     def _restore(self) -> None:
-        kept = settings()
+        kept = recent.settings()
         geometry = kept.value("window/geometry")
         if isinstance(geometry, QByteArray):
             self.restoreGeometry(geometry)
@@ -254,7 +248,7 @@ class MainWindow(QMainWindow):
         self.actions_by_key[theme().choice].setChecked(True)
 
     def closeEvent(self, event: QCloseEvent) -> None:
-        kept = settings()
+        kept = recent.settings()
         kept.setValue("window/geometry", self.saveGeometry())
         for key, page in self.pages.items():
             splitter = getattr(page, "splitter", None)
@@ -273,12 +267,3 @@ def _dropped_folder(event: QDropEvent) -> Path | None:
         if url.isLocalFile() and path.exists():
             return path if path.is_dir() else path.parent
     return None
-
-
-def choose_theme(choice: str) -> None:
-    """Follows the system or keeps to one set of colours, and remembers it."""
-    theme().choose(choice)
-    settings().setValue("window/colours", theme().choice)
-    for widget in QApplication.topLevelWidgets():
-        if isinstance(widget, MainWindow):
-            widget.actions_by_key[theme().choice].setChecked(True)

@@ -1,4 +1,4 @@
-"""The mornings opened before, the last one first, as the settings keep them."""
+"""What the window remembers from one start to the next, among it the mornings opened before, the last one first."""
 
 from __future__ import annotations
 
@@ -7,7 +7,13 @@ from pathlib import Path
 
 from PySide6.QtCore import QSettings
 
+NAME = "Reconciler"
 _KEPT = 8
+
+
+def settings() -> QSettings:
+    """Where the window remembers things, in our own name."""
+    return QSettings(QSettings.Format.IniFormat, QSettings.Scope.UserScope, NAME, NAME)
 
 
 def mornings(kept: QSettings) -> list[tuple[Path, datetime.date]]:

@@ -13,8 +13,9 @@ from pytestqt.qtbot import QtBot
 from reconciler.problems import KnownError, Problem
 from reconciler.window import jobs
 from reconciler.window.loading import Loaded, arrange
-from reconciler.window.main import MainWindow, settings
+from reconciler.window.main import MainWindow
 from reconciler.window.pages.payments import PaymentsPage
+from reconciler.window.recent import settings
 from reconciler.window.table import SheetView, page_of, select_places
 from reconciler.window.theme import theme
 from tests.window import fabricated

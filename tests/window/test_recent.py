@@ -5,8 +5,7 @@ from __future__ import annotations
 import datetime
 from pathlib import Path
 
-from reconciler.window.main import settings
-from reconciler.window.recent import mornings, remember
+from reconciler.window.recent import mornings, remember, settings
 
 
 def test_the_last_morning_stands_first_and_once() -> None:
