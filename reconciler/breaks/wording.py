@@ -64,7 +64,7 @@ NEXT_STEPS: dict[str, str] = {
 }
 
 TOLD_TWICE = {
-    BROKER: ("{Broker} confirms the same trade again under {found}; the first confirmation is {expected}.",
+    BROKER: ("{Broker} confirms the same trade twice, {under}.",
              "Ask {broker} to cancel the second confirmation, or whether it dealt twice."),
     DESK: ("Ticket {found} repeats ticket {expected}, which the confirmation is paired with.",
            "Have one of the two tickets cancelled, or ask for a second confirmation."),
@@ -257,6 +257,14 @@ class _Fields:
     def Entries(self) -> pa.Array:
         first, rest = pc.utf8_slice_codeunits(self.entries, 0, 1), pc.utf8_slice_codeunits(self.entries, 1)
         return texts.join([pc.utf8_upper(first), rest], len(self.rows))
+
+    @property
+    def under(self) -> pa.Array:
+        """The references of a confirmation and of the one that repeats it."""
+        f = self.found_rows
+        first, again = _or(f.expected, "a blank reference"), _or(f.found, "a blank reference")
+        both = pc.binary_join_element_wise("as ", first, " and as ", again, "")
+        return pc.if_else(pc.equal(first, again), pc.binary_join_element_wise("both times as ", first, ""), both)
 
     @property
     def in_account(self) -> pa.Array:

@@ -181,7 +181,7 @@ STEPS: tuple[Callable[[State], State], ...] = (
 def _with_cash(state: State, payments: Table) -> State:
     """The payments with what the bank paid, and everything the search for breaks looks at."""
     source, pairs = state.source, state.pairs
-    paid = cash_matching.pair_cash(payments, source.cash, pairs.repeats)
+    paid = cash_matching.pair_cash(payments, source.cash, pairs.repeats, source.confirmations)
     items, allocations = cash_matching.with_bank(payments, source.cash, paid)
     given = Given(
         items, source.tickets, source.confirmations, source.cash, allocations, concat([pairs.repeats, paid.repeats]), state.terms,
