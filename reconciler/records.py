@@ -95,6 +95,11 @@ class Words:
         """True where something was told."""
         return self.codes >= 0
 
+    def holds(self, text: str) -> np.ndarray:
+        """True where the row holds this text."""
+        code = pc.index(self.values, text).as_py() if len(self.values) and text else -1
+        return self.codes == code if code >= 0 else np.zeros(len(self.codes), np.bool_)
+
     def where(self, mask: np.ndarray, other: Words) -> Words:
         """Own text where `mask` holds, else the other column's."""
         mine, theirs = unify(self, other)

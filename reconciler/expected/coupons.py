@@ -81,9 +81,7 @@ def _counting(trades: Table, repeats: Table | None) -> Array:
     rows = trades["ticket_row"]
     counts = (rows >= 0) & (trades["face_minor"] != MISSING)
     if repeats is not None and len(repeats):
-        word = repeats["kind"].values.to_pylist()
-        codes = [code for code, text in enumerate(word) if text == "ticket"]
-        counts &= ~np.isin(rows, repeats["row"][np.isin(repeats["kind"].codes, codes)])
+        counts &= ~np.isin(rows, repeats["row"][repeats["kind"].holds("ticket")])
     return np.asarray(counts)
 
 

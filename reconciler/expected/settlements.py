@@ -44,6 +44,10 @@ class Pairs(Protocol):
     def cancelled_row(self) -> Array:
         """Row of the cancelled ticket that is confirmed all the same, -1 none."""
 
+    @property
+    def repeats(self) -> Table:
+        """Rows told twice: kind ("ticket" or "confirmation"), row, and the row of_row it repeats."""
+
 
 @dataclass(frozen=True)
 class _Told:
@@ -86,8 +90,7 @@ def expect_trades(
     day = np.full(len(row), NAT) if bank_date is None else bank_date
     trade_date = _trade_dates(terms, row, desk, broker, day)
     settle_on = _settlement_dates(terms, row, trade_date, desk, broker, day)
-    fees = np.where(desk.fees == MISSING, broker.fees, desk.fees)
-    fees = np.where(fees == MISSING, 0, fees)
+    fees = _fees(pairs, desk.fees, broker.fees)
     by_broker = _dealt(terms, row, settle_on, fees, desk, broker, bank)
     face, price, side = (_chosen(by_broker[n], getattr(desk, n), getattr(broker, n)) for n in ("face", "price", "side"))
     reckoned = _reckon(terms, row, settle_on, side, face, price, fees)
@@ -142,6 +145,19 @@ def _scaled(minor: Array, shift: Array) -> Array:
         return minor
     more = minor * 10 ** np.maximum(shift, 0) // 10 ** np.maximum(-shift, 0)
     return np.where(minor == MISSING, MISSING, more)
+
+
+def _fees(pairs: Pairs, desk: Array, broker: Array) -> Array:
+    """The ticket's fees, else the confirmation's, else none; a ticket told twice has the confirmation of the one it repeats."""
+    fees = np.where(desk == MISSING, broker, desk)
+    repeats = pairs.repeats
+    if len(repeats) and (fees == MISSING).any():
+        item_of = np.full(max(int(pairs.ticket_row.max(initial=-1)), int(repeats["of_row"].max())) + 1, -1)
+        item_of[pairs.ticket_row[pairs.ticket_row >= 0]] = np.flatnonzero(pairs.ticket_row >= 0)
+        of_ticket = repeats["kind"].holds("ticket")
+        again, original = (item_of[repeats[name][of_ticket]] for name in ("row", "of_row"))
+        fees[again] = np.where(fees[again] == MISSING, fees[original], fees[again])
+    return np.where(fees == MISSING, 0, fees)
 
 
 def _untold(name: str, column: Array) -> Array:

@@ -36,8 +36,9 @@ PROPOSALS: dict[str, str] = {"group": "int64", **ALLOCATIONS}
 
 @dataclass(frozen=True)
 class CashPairs:
-    """`allocations` (records.ALLOCATIONS) say what each entry pays, `repeats` (kind "entry", row, of_row) what is told twice,
-    `proposals` (PROPOSALS) what a person might pair."""
+    """What pays what (`allocations`, records.ALLOCATIONS), what is told twice (`repeats`: kind "entry", row, of_row), and what a
+    person might pair (`proposals`, PROPOSALS).
+    """
 
     allocations: Table
     repeats: Table
@@ -87,9 +88,7 @@ def _numbers(items: Table, confirmations: Table | None) -> Words:
 def _silent(items: Table, repeats: Table | None) -> Array:
     if repeats is None or not len(repeats):
         return np.zeros(len(items), np.bool_)
-    codes = [code for code, text in enumerate(repeats["kind"].values.to_pylist()) if text == "ticket"]
-    rows = repeats["row"][np.isin(repeats["kind"].codes, codes)]
-    return np.isin(items["ticket_row"], rows)
+    return np.isin(items["ticket_row"], repeats["row"][repeats["kind"].holds("ticket")])
 
 
 def with_bank(items: Table, cash: Table, pairs: CashPairs) -> tuple[Table, Table]:

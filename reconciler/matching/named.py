@@ -163,6 +163,7 @@ def _sound(board: Board, pairs: Pairs, trusted: Array) -> Pairs:
     if not len(entry):
         return pairs
     account = board.e_account[entry] == board.i_account[payment]
+    account |= (board.e_account[entry] < 0) | (board.i_account[payment] < 0)
     currency = board.e_currency[entry] == board.i_currency[payment]
     told_bond, bond = board.e_bond[entry], board.i_bond[payment]
     amount = board.fits(payment, board.e_amount[entry]) | board.fits(payment, -board.e_amount[entry])

@@ -16,7 +16,7 @@ import numpy as np
 from reconciler.matching import keys
 from reconciler.matching.facts import TOLD
 from reconciler.matching.keys import Pairs, content_order, mixed, whole
-from reconciler.records import MISSING, STATUSES, Table
+from reconciler.records import MISSING, STATUSES, Table, Words, unify
 
 Array = np.ndarray[Any, Any]
 
@@ -43,8 +43,14 @@ def _told_under(confirmations: Table) -> Array:
     return mixed((whole(confirmations["broker"]), which, number))
 
 
-def repeated_confirmations(confirmations: Table, facts: Mapping[str, Array], ticket_of: Array, left: Array) -> Pairs:
-    """Those of the rows `left` without a ticket that repeat another confirmation, and which one each repeats."""
+def repeated_confirmations(
+    confirmations: Table, tickets: Words, facts: Mapping[str, Array], ticket_of: Array, left: Array
+) -> Pairs:
+    """Those of the rows `left` without a ticket that repeat another confirmation, and which one each repeats.
+
+    `tickets` are the ticket numbers, `ticket_of` the ticket row of every confirmation (-1 none). A confirmation that names another ticket
+    than the paired one's is no repeat of it, however alike.
+    """
     if not len(left):
         return keys.NO_PAIRS
     order = content_order(confirmations)
@@ -57,11 +63,12 @@ def repeated_confirmations(confirmations: Table, facts: Mapping[str, Array], tic
     rest = left[(of[left] < 0) & told[left]]
     _point(of, by_number, rest, _firsts(by_number, rest, order), order)
     by_facts = mixed(facts[name] for name in TOLD)
-    desk = whole(confirmations["desk_reference"])
+    own, told_numbers = unify(tickets, confirmations["desk_reference"])
+    number = np.where(ticket_of < 0, whole(told_numbers), whole(own.take(ticket_of)))
     rest = np.setdiff1d(left[of[left] < 0], of[of >= 0])
     known = rest[np.all([facts[name][rest] != MISSING for name in ("bond", "face", "amount")], axis=0)] if len(rest) else rest
-    for key in (mixed((by_facts.view(np.int64), desk)), by_facts):
-        _point(of, key, known[of[known] < 0], paired, order, desk)
+    for key in (mixed((by_facts.view(np.int64), number)), by_facts):
+        _point(of, key, known[of[known] < 0], paired, order, number)
     again = left[of[left] >= 0]
     return again, of[again]
 

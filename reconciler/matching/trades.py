@@ -106,7 +106,9 @@ def pair_trades(tickets: Table, confirmations: Table) -> TradePairs:
 
 def _result(work: _Pairing, active: Array) -> TradePairs:
     left = np.flatnonzero(work.stands & (work.of_confirmation < 0))
-    again, of_confirmation = repeated_confirmations(work.confirmations, work.facts.broker, work.of_confirmation, left)
+    again, of_confirmation = repeated_confirmations(
+        work.confirmations, work.tickets["ticket"], work.facts.broker, work.of_confirmation, left
+    )
     twice, of_ticket = repeated_tickets(work.tickets, work.facts.desk, work.of_ticket, active)
     lone = np.setdiff1d(left, again, assume_unique=True)
     mine = np.flatnonzero(active)
