@@ -103,13 +103,13 @@ def coupon_table(terms: Terms, bond_row: int, face_minor: int) -> Table:
     )  # fmt: skip
 
 
-def bond_coupons(day: Day, bond_row: int, item_row: int = -1) -> Coupons:
-    """All coupons of the bond in row `bond_row` of the day's bonds, on the item's face (100 when no item is looked at)."""
+def bond_coupons(day: Day, bond_row: int, item_row: int = -1, face: int = 100) -> Coupons:
+    """All coupons of the bond in row `bond_row` of the day's bonds, on the item's face (`face` when no item is looked at)."""
     terms = day.terms
     digits = int(terms.currency_digits[bond_row])
     item = day.items.row(item_row) if item_row >= 0 else None
-    face = 100 * 10**digits if item is None or item["face_minor"] == MISSING else abs(int(item["face_minor"]))
-    listed = coupon_table(terms, bond_row, face)
+    minor = face * 10**digits if item is None or item["face_minor"] == MISSING else abs(int(item["face_minor"]))
+    listed = coupon_table(terms, bond_row, minor)
     if not len(listed):
         return Coupons(listed, strip_around(terms, bond_row, item) if item else Strip(), digits)
     dates = listed["end"]

@@ -32,7 +32,8 @@ class Overview:
     """One value per item of the day, plus the day's counts.
 
     `first_break` and `party_breaks[party]` are row numbers into the day's breaks (-1 none); `party_bits` has bit i set when
-    party i of records.PARTIES has a break; `net_minor` is MISSING where there is nothing to compare.
+    party i of records.PARTIES has a break; `net_minor` is MISSING where there is nothing to compare; `cash_row` is the first bank
+    entry allocated to the item (-1 none).
     """
 
     first_break: np.ndarray
@@ -46,6 +47,7 @@ class Overview:
     state: np.ndarray
     net_minor: np.ndarray
     net: tuple[NetDifference, ...]
+    cash_row: np.ndarray
     counts: dict[str, int]
     breaks: int
 
@@ -63,8 +65,10 @@ def overview(day: Any) -> Overview:
     np.bitwise_or.at(kind_bits, item_row, np.left_shift(1, kind_of.astype(np.int64)))
     by_party = []
     party_bits = np.zeros(rows, np.int8)
+    # a party's cell tells the amount where that is off, else its most urgent break
+    amounts_last = order[np.argsort(_is_amount(breaks["break"])[order], kind="stable")]
     for number in range(len(PARTIES)):
-        mine = order[parties[order] == number]
+        mine = amounts_last[parties[amounts_last] == number]
         by_party.append(_lay_down(rows, item_row[mine], mine))
         party_bits[item_row[mine]] |= np.int8(1 << number)
     digits = digits_of(items["currency"])
@@ -85,6 +89,7 @@ def overview(day: Any) -> Overview:
         net=_net_by_currency(items["currency"], net_minor, digits, item_row[order[::-1]]),
         counts=counts,
         breaks=len(breaks),
+        cash_row=_lay_down(rows, day.allocations["item_row"][::-1], day.allocations["cash_row"][::-1]),
     )
 
 
@@ -92,6 +97,10 @@ def digits_of(currency: Words) -> np.ndarray:
     """Digits of the minor unit of every row's currency (int64), 2 where it is blank."""
     per_value = np.append(np.asarray(money.minor_digits(currency.values.to_pylist()), np.int64), 2)
     return per_value[currency.codes]
+
+
+def _is_amount(kinds: Words) -> np.ndarray:
+    return _numbers(kinds, ("settlement amount", "payment amount")) >= 0
 
 
 def _lay_down(rows: int, at: np.ndarray, what: np.ndarray) -> np.ndarray:

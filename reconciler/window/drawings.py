@@ -158,12 +158,24 @@ class CashLadder(QWidget):
         painter.setFont(look.font("small"))
         painter.setPen(look.colour("soft"))
         metrics = painter.fontMetrics()
+        self._legend(painter)
+        painter.setPen(look.colour("soft"))
         year = int(str(np.datetime64(self.days[0], "Y")))
         every = max(1, int(np.ceil((metrics.horizontalAdvance("30 Mar") + 14) / step)))
         for number, day in enumerate(self.days):
             if number % every == 0:
                 room = QRectF(left + number * step - 40, self._axis_top(), step + 80, 20)
                 painter.drawText(room, Qt.AlignmentFlag.AlignCenter, figures.date(day, year))
+
+    def _legend(self, painter: QPainter) -> None:
+        look, x = theme(), 0.0
+        for colour, words in (("accent", "received"), ("outline", "paid")):
+            painter.setPen(Qt.PenStyle.NoPen)
+            painter.setBrush(look.colour(colour))
+            painter.drawRoundedRect(QRectF(x, self._axis_top() + 6, 8, 8), 1.5, 1.5)
+            painter.setPen(look.colour("soft"))
+            painter.drawText(QPointF(x + 12, self._axis_top() + 14), words)
+            x += 24 + painter.fontMetrics().horizontalAdvance(words)
 
     def _axis_top(self) -> float:
         return min((self.height() - self.AXIS) / len(self.currencies), 96) * len(self.currencies) + 6

@@ -71,7 +71,7 @@ def amount_column(name: str, title: str, help_text: str, width: int = 132, signe
         digits = data.digits[at].tolist()
         return [
             Cell(figures.amount(minor, digits[i], signed), shift=data.finest - digits[i] if minor != MISSING else 0,
-                 tone=alarm if alarm and minor not in (0, MISSING) else "soft" if alarm else "")
+                 tone=alarm if alarm and minor not in (0, MISSING) else "soft" if alarm or not minor else "")
             for i, minor in enumerate(data.table[name][at].tolist())
         ]  # fmt: skip
 
@@ -128,8 +128,8 @@ BOND_COLUMNS: tuple[Column, ...] = (
     count_column("frequency", "A year", "Coupons a year", 58),
     text_column("day_count", "Day count", "How days of accrued interest are counted", 112),
     date_column("maturity", "Maturity", "The day the face is paid back", 96),
-    text_column("payment_adjustment", "Moved", "Where a payment goes that falls on a closed day", 120, stretch=1),
-    text_column("calendar", "Calendar", "Whose closed days move its payments; blank: weekends only", 88, stretch=1),
+    text_column("payment_adjustment", "Moved", "Where a payment goes that falls on a closed day", 104),
+    text_column("calendar", "Calendar", "Whose closed days move its payments; blank: weekends only", 78),
     text_column("ex_dividend", "Ex", "Ex-dividend this many business (b) or calendar (c) days before the coupon", 48),
     text_column("record", "Record", "Record date this many days before the coupon", 62),
     text_column("terms", "Terms", "Whether the bond can be reckoned", 76),
@@ -168,8 +168,9 @@ def _file(data: FileRows, at: Rows) -> list[Cell]:
     cells = []
     for name in texts(data.table["file"].take(at)):
         one = data.read.get(name)
+        place, _, short = name.rpartition("/")
         told = (one.broker, one.layout, one.encoding, _DELIMITERS.get(one.delimiter, one.delimiter)) if one is not None else ()
-        cells.append(Cell(name, "  ·  ".join(part for part in told if part), strong=True))
+        cells.append(Cell(short, "  ·  ".join(part for part in (*told, f"in {place}" if place else "") if part), strong=True))
     return cells
 
 

@@ -15,6 +15,7 @@ from typing import Any
 import numpy as np
 
 from reconciler.problems import Problem
+from reconciler.records import Table
 from reconciler.window.jobs import Progress
 from reconciler.window.lists import ahead_sheet, bonds_sheet, files_sheet, rejects_sheet
 from reconciler.window.payments import payments_sheet
@@ -29,6 +30,7 @@ class Loaded:
     day: Any
     overview: Any
     ahead: Any
+    bonds: Table
     sheets: dict[str, Sheet] = field(default_factory=dict)
 
     @property
@@ -57,16 +59,17 @@ def arrange(folder: Path | None, day: Any, coming: Any) -> Loaded:
 
     seen = overview(day)
     year = int(str(np.datetime64(day.date, "Y")))
+    bonds = bondlist(day)
     sheets = {
         "breaks": payments_sheet(day, seen, ("break",)),
         "due": payments_sheet(day, seen, ("due",)),
         "agreed": payments_sheet(day, seen, ("agrees", "within tolerance")),
-        "bonds": bonds_sheet(bondlist(day)),
+        "bonds": bonds_sheet(bonds),
         "files": files_sheet(day.source.totals, digits_of(day.source.totals["currency"]), day.source.files),
         "rejects": rejects_sheet(day.source.rejects),
         "ahead": ahead_sheet(coming.payments, coming.digits, year, day.source.bonds),
     }
-    return Loaded(folder, day, seen, coming, sheets)
+    return Loaded(folder, day, seen, coming, bonds, sheets)
 
 
 def prepare(loaded: Loaded, progress: Progress) -> None:

@@ -73,17 +73,18 @@ def payment_cells(data: Payments, at: Rows) -> list[Cell]:
     accounts, entries = texts(data.item("account", at)), texts(data.item("bank_entries", at))
     references = texts(data.item("broker_reference", at))
     days = np.where(np.isnat(data.item("terms_date", at)), data.item("desk_date", at), data.item("terms_date", at))
+    narratives = texts(data.day.source.cash["narrative"].take(data.overview.cash_row[data.rows[at]]))
     bank_days = data.item("bank_date", at)
     cells = []
     for i, kind in enumerate(kinds):
         face = figures.face(faces[i], digits[i])
-        title = title_of(kind, sides[i], face, names[i], f"Bank entry {entries[i]}".strip())
+        title = title_of(kind, sides[i], face, names[i], narratives[i])
         when = figures.date(days[i], data.year)
         if kind == "trade":
             who = brokers[i] or "no broker told"
             small = (tickets[i] or references[i], f"settles {when}" if when else "", who)
         elif kind == "bank":
-            small = (f"booked for {figures.date(bank_days[i], data.year)}", names[i], accounts[i])
+            small = (f"entry {entries[i]}", f"booked for {figures.date(bank_days[i], data.year)}", names[i], accounts[i])
         else:
             small = (f"due {when}" if when else "", accounts[i])
         cells.append(Cell(title, "  ·  ".join(part for part in small if part), strong=True))
@@ -165,7 +166,7 @@ def days_apart(difference: str, kind: str = "") -> str:
 def why_cells(data: Payments, at: Rows) -> list[Cell]:
     """The cause of the most urgent break, how certain it is, and how many more breaks the payment has."""
     causes, sentences = texts(data.of_break("cause", at)), texts(data.of_break("explanation", at))
-    kinds, parties = texts(data.of_break("break", at)), texts(data.of_break("party", at))
+    kinds = texts(data.of_break("break", at))
     certainties = texts(data.of_break("certainty", at))
     more = (data.overview.break_count[data.rows[at]] - 1).tolist()
     states = data.overview.state[data.rows[at]].tolist()
@@ -179,8 +180,11 @@ def why_cells(data: Payments, at: Rows) -> list[Cell]:
         small = CERTAINTY_WORDS.get(certainties[i], "open").format(unit=unit)
         if more[i] > 0:
             small += f"  ·  {figures.count(more[i], 'more break')}"
-        text = causes[i] or sentences[i] or f"{kind}, {parties[i]}"
+        # without a cause the kind stands first, and the sentence about it after the certainty
+        text = causes[i] or kind
         text = text[:1].upper() + text[1:]
+        if not causes[i] and sentences[i]:
+            small += f"  ·  {sentences[i]}"
         cells.append(Cell(text, small, {"proved": "✓", "likely": "≈"}.get(certainties[i], ""),
                           CERTAINTY_TONES.get(certainties[i], "soft")))
     return cells

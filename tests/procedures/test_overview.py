@@ -14,13 +14,14 @@ def test_first_breaks_are_the_most_urgent_ones() -> None:
     day = fabricated.day()
     seen = overview(day)
     rows, ranks = day.breaks["item_row"].tolist(), day.breaks["rank"].tolist()
-    parties = day.breaks["party"].to_list()
+    parties, kinds = day.breaks["party"].to_list(), day.breaks["break"].to_list()
     for item in range(len(day.items)):
         mine = sorted((ranks[i], i) for i, row in enumerate(rows) if row == item)
         assert seen.first_break[item] == (mine[0][1] if mine else -1)
         assert seen.break_count[item] == len(mine)
         for number, party in enumerate(PARTIES):
             of_party = [i for _, i in mine if parties[i] == party]
+            of_party.sort(key=lambda i: kinds[i] not in ("settlement amount", "payment amount"))
             assert seen.party_breaks[number][item] == (of_party[0] if of_party else -1)
             assert bool(seen.party_bits[item] >> number & 1) == bool(of_party)
 

@@ -28,10 +28,10 @@ def own_settings(tmp_path: Path) -> None:
 @pytest.fixture()
 def made_up_working(monkeypatch: pytest.MonkeyPatch) -> None:
     """The fabricated morning has no terms: its working and coupons are fabricated too."""
-    from reconciler.procedures import working
+    from reconciler.procedures import bond_coupons, working
 
     monkeypatch.setattr(working, "working", fabricated.working)
-    monkeypatch.setattr(working, "bond_coupons", fabricated.bond_coupons)
+    monkeypatch.setattr(bond_coupons, "bond_coupons", fabricated.bond_coupons)
 
 
 @pytest.fixture()

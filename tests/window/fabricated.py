@@ -264,7 +264,8 @@ def large_day(rows: int = 1_000_000) -> FabricatedDay:
 
 def working(_day: Any, item_row: int) -> Any:
     """What procedures.working.working tells of the first payment of the small morning, and something short of the others."""
-    from reconciler.procedures.working import Line, Strip, Working
+    from reconciler.procedures.bond_coupons import Strip
+    from reconciler.procedures.working import Line, Working
 
     if item_row:
         return Working("", "", (Line("Payment amount", "198,400.00", note="12,400,000 × 3.20 % / 2"),), ())
@@ -282,9 +283,9 @@ def working(_day: Any, item_row: int) -> Any:
     return Working("Buy 5,000,000 Marlow Gas 4.625 2031", "", lines, ("Terms", "Broker", "Desk", "Bank"), (), strip)
 
 
-def bond_coupons(_day: Any, _bond_row: int, item_row: int = -1) -> Any:
+def bond_coupons(_day: Any, _bond_row: int, item_row: int = -1, _face: int = 100) -> Any:
     """What procedures.working.bond_coupons tells."""
-    from reconciler.procedures.working import COUPONS, Coupons
+    from reconciler.procedures.bond_coupons import COUPONS, Coupons
 
     ends = np.array([f"{year}-09-15" for year in range(2022, 2032)], "datetime64[D]")
     moved = np.where(np.is_busday(ends), ends, np.busday_offset(ends, 0, roll="following"))

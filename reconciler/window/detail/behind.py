@@ -6,7 +6,7 @@ One place asks the procedures and puts their answers into the window's words, so
 from __future__ import annotations
 
 from dataclasses import dataclass
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
@@ -17,6 +17,9 @@ from reconciler.window.detail.working import working_sheet
 from reconciler.window.drawings import Strip
 from reconciler.window.payment_cells import title_of
 from reconciler.window.sheet import Sheet
+
+if TYPE_CHECKING:
+    from reconciler.window.loading import Loaded
 
 
 @dataclass(frozen=True)
@@ -45,26 +48,22 @@ _LOOKS = {"no confirmation": "silent", "no ticket": "silent", "no cash": "silent
           "trade date": "day"}  # fmt: skip
 
 
-def year_of(day: Any) -> int:
-    """The year of the morning."""
-    return int(str(np.datetime64(day.date, "Y")))
-
-
-def heading(day: Any, overview: Any, row: int) -> tuple[str, str]:
+def heading(loaded: Loaded, row: int) -> tuple[str, str]:
     """The payment in one line, and who, what and when below it."""
-    item = day.items.row(row)
-    digits = int(overview.digits[row])
-    name = overview.description.text(row)
+    item = loaded.day.items.row(row)
+    digits = int(loaded.overview.digits[row])
+    name = loaded.overview.description.text(row)
     title = title_of(item["kind"], int(item["side"]), figures.face(int(item["face_minor"]), digits), name,
-                     f"Bank entry {item['bank_entries']}".strip())  # fmt: skip
+                     _narrative(loaded, row))  # fmt: skip
     parts = [item["bond"]]
-    bond_row = int(item["bond_row"])
-    if bond_row >= 0:
-        bond = day.source.bonds.row(bond_row)
+    if int(item["bond_row"]) >= 0:
+        bond = loaded.bonds.row(int(item["bond_row"]))
         maturity = figures.date(bond["maturity"])
-        parts += [bond["day_count"], f"matures {maturity}" if maturity else ""]
+        parts += [_rhythm(bond), bond["day_count"], f"matures {maturity}" if maturity else ""]
     if item["kind"] == "trade":
         parts += [f"{item['ticket'] or item['broker_reference']} with {item['broker'] or 'a broker not told'}"]
+    elif item["kind"] == "bank":
+        parts += [f"entry {item['bank_entries']}", f"account {item['account']}"]
     elif item["kind"] in ("coupon", "redemption"):
         parts += [f"account {item['account']}"]
         if not np.isnat(item["record_date"]):
@@ -73,18 +72,31 @@ def heading(day: Any, overview: Any, row: int) -> tuple[str, str]:
     return title, "  ·  ".join(part for part in parts if part)
 
 
-def has_coupons(day: Any, row: int) -> bool:
+def _narrative(loaded: Loaded, row: int) -> str:
+    cash_row = int(loaded.overview.cash_row[row])
+    return loaded.day.source.cash["narrative"].text(cash_row) if cash_row >= 0 else ""
+
+
+def _rhythm(bond: dict[str, Any]) -> str:
+    """How often the bond pays: "4.625 % semi-annual"."""
+    rate = figures.decimal(int(bond["coupon_rate_e9"]), 9)
+    often = {1: "annual", 2: "semi-annual", 4: "quarterly", 12: "monthly"}.get(int(bond["frequency"]), "no coupons")
+    return f"{rate} % {often}" if rate else bond["kind"] if often == "no coupons" else often
+
+
+def has_coupons(loaded: Loaded, row: int) -> bool:
     """True when the item's bond is known."""
-    return int(day.items["bond_row"][row]) >= 0
+    return int(loaded.day.items["bond_row"][row]) >= 0
 
 
-def accounts(day: Any, overview: Any, row: int) -> Sheet:
+def accounts(loaded: Loaded, row: int) -> Sheet:
     """The four accounts side by side."""
-    return accounts_sheet(day, overview, row)
+    return accounts_sheet(loaded.day, loaded.overview, row)
 
 
-def differences(day: Any, row: int) -> list[Told]:
+def differences(loaded: Loaded, row: int) -> list[Told]:
     """Every break of the payment as a sentence, the most urgent first; one line when there is none."""
+    day = loaded.day
     told = []
     for one in breaks_of(day, row):
         title = f"{one['break'][:1].upper()}{one['break'][1:]}  ·  {one['party']}"
@@ -98,21 +110,20 @@ def differences(day: Any, row: int) -> list[Told]:
     return told
 
 
-def bond_heading(day: Any, row: int) -> tuple[str, str]:
+def bond_heading(loaded: Loaded, row: int) -> tuple[str, str]:
     """A bond's description, and its main terms below it."""
-    bond = day.source.bonds.row(row)
-    rate = figures.decimal(int(bond["coupon_rate_e9"]), 9)
-    parts = [bond["bond"], bond["currency"], bond["kind"], f"{rate} %" if rate else "", bond["day_count"], bond["calendar"],
+    bond = loaded.bonds.row(row)
+    parts = [bond["bond"], bond["currency"], bond["kind"], _rhythm(bond), bond["day_count"], bond["calendar"],
              f"matures {figures.date(bond['maturity'])}" if not np.isnat(bond["maturity"]) else ""]  # fmt: skip
     return bond["description"] or bond["bond"], "  ·  ".join(part for part in parts if part)
 
 
-def working(day: Any, row: int) -> Shown:
+def working(loaded: Loaded, row: int) -> Shown:
     """How the payment is reckoned, what was found, what to do next."""
     from reconciler.procedures import working as procedure
 
-    found = breaks_of(day, row)
-    told = procedure.working(day, row)
+    found = breaks_of(loaded.day, row)
+    told = procedure.working(loaded.day, row)
     first = found[0] if found else None
     certainty = first["certainty"] if first else ""
     look = {"proved": "differ", "likely": "day", "open": "silent"}.get(certainty, "")
@@ -134,14 +145,14 @@ def strip_of(told: Any) -> Strip:
     return Strip(told.boundaries, told.accrued, told.marked, told.marked_words, told.accrued_words, told.next_period)
 
 
-def coupons(day: Any, row: int) -> tuple[Sheet, Strip]:
+def coupons(loaded: Loaded, row: int) -> tuple[Sheet, Strip]:
     """The coupons of the payment's bond."""
-    return bond_coupons(day, int(day.items["bond_row"][row]), row)
+    return bond_coupons(loaded, int(loaded.day.items["bond_row"][row]), row)
 
 
-def bond_coupons(day: Any, bond_row: int, item_row: int = -1) -> tuple[Sheet, Strip]:
-    """A bond's coupons as list and strip."""
-    from reconciler.procedures import working as procedure
+def bond_coupons(loaded: Loaded, bond_row: int, item_row: int = -1) -> tuple[Sheet, Strip]:
+    """A bond's coupons as list and strip, on the item's face or on a million."""
+    from reconciler.procedures import bond_coupons as procedure
 
-    told = procedure.bond_coupons(day, bond_row, item_row)
+    told = procedure.bond_coupons(loaded.day, bond_row, item_row, 1_000_000)
     return coupons_sheet(told.table, told.digits, told.shown), strip_of(told.strip)

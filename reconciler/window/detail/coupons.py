@@ -5,6 +5,7 @@ from __future__ import annotations
 import numpy as np
 
 from reconciler.records import Table
+from reconciler.window import figures
 from reconciler.window.lists import Records, amount_column, count_column, date_column, facts_of
 from reconciler.window.sheet import Cell, Column, Rows, Sheet, texts
 
@@ -18,8 +19,6 @@ class _Coupons(Records):
 
 
 def _payment(data: _Coupons, at: Rows) -> list[Cell]:
-    from reconciler.window import figures
-
     reasons = texts(data.table["why"].take(at))
     days = data.table["payment_date"][at]
     return [Cell(figures.date(day), tone="day" if reasons[i] else "", glyph="→" if reasons[i] else "") for i, day in enumerate(days)]
@@ -44,7 +43,6 @@ COLUMNS = (
     count_column("days", "Days", "Days of the period by the bond's day count", 60),
     date_column("ex_date", "Ex-dividend", "Trades that settle on or after this day go without the coupon", 104),
     date_column("record_date", "Record date", "Who holds the bond at the close of this day is paid", 104),
-    amount_column("amount_minor", "Amount", "On the face looked at", 110),
 )  # fmt: skip
 
 FACTS = [
@@ -55,5 +53,7 @@ FACTS = [
 
 
 def coupons_sheet(table: Table, digits: int, shown: int = -1) -> Sheet:
-    """The coupons (procedures.working.Coupons) as a list; `shown` is the row the payment belongs to."""
-    return Sheet(_Coupons(table, digits, shown), len(table), COLUMNS, facts_of(table, FACTS))
+    """The coupons (procedures.bond_coupons.Coupons) as a list; `shown` is the row the payment belongs to."""
+    face = figures.face(int(table["face_minor"][0]), digits) if len(table) else ""
+    amount = amount_column("amount_minor", f"On {face}", "The coupon on this face", 110)
+    return Sheet(_Coupons(table, digits, shown), len(table), (*COLUMNS, amount), facts_of(table, FACTS))

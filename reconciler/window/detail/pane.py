@@ -6,15 +6,19 @@ its tab is looked at, never for the whole list.
 
 from __future__ import annotations
 
-from typing import Any
+from typing import TYPE_CHECKING
 
 from PySide6.QtCore import Qt, Signal
+from PySide6.QtGui import QShowEvent
 from PySide6.QtWidgets import QFrame, QHBoxLayout, QScrollArea, QStackedWidget, QTabBar, QVBoxLayout, QWidget
 
 from reconciler.window.detail import behind
 from reconciler.window.drawings import CouponStrip
 from reconciler.window.table import SheetView
 from reconciler.window.widgets import Empty, Notice, discard, label
+
+if TYPE_CHECKING:
+    from reconciler.window.loading import Loaded
 
 TABS = ("accounts", "working", "coupons")
 
@@ -46,8 +50,7 @@ class DetailPane(QFrame):
         self.pages.addWidget(self._working_page())
         self.pages.addWidget(self._coupons_page())
         self.nothing = Empty("Nothing chosen", "Choose a payment in the list to see what lies behind it.")
-        self._day: Any = None
-        self._overview: Any = None
+        self._loaded: Loaded | None = None
         self._row = -1
         self._made: set[int] = set()
         self.body = QWidget()
@@ -68,21 +71,21 @@ class DetailPane(QFrame):
         column.addWidget(self.pages, 1)
         column.addWidget(self.nothing, 1)
         self.tabs.currentChanged.connect(self._tab_changed)
-        self.show_row(None, None, -1)
+        self.show_row(None, -1)
 
-    def show_row(self, day: Any, overview: Any, item_row: int) -> None:
-        """Shows the detail of an item (-1: none)."""
-        self._day, self._overview, self._row = day, overview, item_row
+    def show_row(self, loaded: Loaded | None, item_row: int) -> None:
+        """Shows the detail of an item of a morning (-1: none)."""
+        self._loaded, self._row = loaded, item_row
         self._made = set()
-        there = day is not None and item_row >= 0
+        there = loaded is not None and item_row >= 0
         self.body.setVisible(there)
         self.pages.setVisible(there)
         self.nothing.setVisible(not there)
-        if there:
-            title, subtitle = behind.heading(day, overview, item_row)
+        if loaded is not None and there:
+            title, subtitle = behind.heading(loaded, item_row)
             self.title.setText(title)
             self.subtitle.setText(subtitle)
-            has_coupons = behind.has_coupons(day, item_row)
+            has_coupons = behind.has_coupons(loaded, item_row)
             self.tabs.setTabEnabled(2, has_coupons)
             if not has_coupons and self.tabs.currentIndex() == 2:
                 self.tabs.setCurrentIndex(0)
@@ -102,31 +105,36 @@ class DetailPane(QFrame):
 
     def _tab_changed(self, tab: int) -> None:
         self.pages.setCurrentIndex(tab)
-        if self._day is None or self._row < 0 or tab in self._made:
+        # what nobody looks at is not made: pages that are not shown have details too
+        if self._loaded is None or self._row < 0 or tab in self._made or not self.isVisible():
             return
         self._made.add(tab)
-        (self._fill_accounts, self._fill_working, self._fill_coupons)[tab]()
+        (self._fill_accounts, self._fill_working, self._fill_coupons)[tab](self._loaded)
 
-    def _fill_accounts(self) -> None:
-        self.facts.set_sheet(behind.accounts(self._day, self._overview, self._row))
+    def showEvent(self, event: QShowEvent) -> None:
+        super().showEvent(event)
+        self._tab_changed(self.tabs.currentIndex())
+
+    def _fill_accounts(self, loaded: Loaded) -> None:
+        self.facts.set_sheet(behind.accounts(loaded, self._row))
         while self.differs.count():
             old = self.differs.takeAt(0).widget()
             if old is not None:
                 discard(old)
-        for told in behind.differences(self._day, self._row):
+        for told in behind.differences(loaded, self._row):
             notice = Notice()
             notice.say(told.title, told.text, told.look)
             self.differs.addWidget(notice)
 
-    def _fill_working(self) -> None:
-        shown = behind.working(self._day, self._row)
+    def _fill_working(self, loaded: Loaded) -> None:
+        shown = behind.working(loaded, self._row)
         self.working.set_sheet(shown.sheet)
         self.strip.show_strip(shown.strip)
         self.proof.say(shown.found, shown.found_more, shown.look)
         self.next_step.setText(shown.next_step or "Nothing needs to be done.")
 
-    def _fill_coupons(self) -> None:
-        sheet, strip = behind.coupons(self._day, self._row)
+    def _fill_coupons(self, loaded: Loaded) -> None:
+        sheet, strip = behind.coupons(loaded, self._row)
         self.coupons.set_sheet(sheet)
         self.wide_strip.show_strip(strip)
 

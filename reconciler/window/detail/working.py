@@ -14,6 +14,8 @@ from reconciler.window.sheet import Cell, Sheet
 from reconciler.window.static import static_sheet
 
 _SUMS = ("Settlement amount", "Payment amount", "Amount", "Coupon", "Redemption")
+_IN_NOTES = ("Side", "Face", "Price")
+"""Facts the principal's note tells too; they have a line of their own only when somebody differs."""
 _HEADS = {"Broker": "Broker as confirmed", "Desk": "Desk as booked", "Bank": "Bank as paid"}
 
 
@@ -25,6 +27,8 @@ def working_sheet(told: Any, broken: Collection[str]) -> Sheet:
         parties = [party for party in PARTIES[1:] if party in told.parties][-1:]
     rows = []
     for line in told.lines:
+        if line.fact in _IN_NOTES and not line.differs:
+            continue
         strong = line.fact in _SUMS
         cells = [Cell(line.fact, strong=strong), Cell(line.note, tone="soft"), Cell(line.terms, strong=strong)]
         for party in parties:

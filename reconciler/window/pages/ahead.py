@@ -20,7 +20,7 @@ class AheadPage(Page):
     """The ladder above, the payments below."""
 
     def __init__(self, actions: Mapping[str, QAction]) -> None:
-        super().__init__("ahead", "Payments ahead", "payment", "Find payment, account, amount, day …", actions, two_lines=False)
+        super().__init__("ahead", "Payments ahead", "payment", "Find payment, account, amount …", actions, two_lines=False)
         self.ladder = CashLadder()
         self.splitter = QSplitter(Qt.Orientation.Vertical)
         self.splitter.setChildrenCollapsible(False)

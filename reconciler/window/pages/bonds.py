@@ -80,10 +80,10 @@ class BondsPage(Page):
         # a page nobody looks at reckons no coupons
         if self._loaded is None or row < 0 or not self.isVisible():
             return
-        title, subtitle = behind.bond_heading(self._loaded.day, row)
+        title, subtitle = behind.bond_heading(self._loaded, row)
         self.title.setText(title)
         self.subtitle.setText(subtitle)
-        sheet, strip = behind.bond_coupons(self._loaded.day, row)
+        sheet, strip = behind.bond_coupons(self._loaded, row)
         self.coupons.set_sheet(sheet)
         self.strip.show_strip(strip)
         self.strip.setVisible(len(strip.boundaries) > 1)

@@ -7,12 +7,12 @@ from typing import Any
 
 from PySide6.QtCore import Qt
 from PySide6.QtGui import QAction
-from PySide6.QtWidgets import QFrame, QSplitter, QStackedLayout, QVBoxLayout, QWidget
+from PySide6.QtWidgets import QFrame, QSplitter, QVBoxLayout, QWidget
 
 from reconciler.window import figures
 from reconciler.window.pages.page import Page
 from reconciler.window.table import SheetView
-from reconciler.window.widgets import Empty, label
+from reconciler.window.widgets import label
 
 
 class FilesPage(Page):
@@ -22,18 +22,13 @@ class FilesPage(Page):
         super().__init__("files", "Files of the day", "line", "Find file, currency, amount …", actions)
         self.rejects = SheetView("Rejected rows", two_lines=False)
         self.rejects_title = label("Rejected rows", "heading")
-        self.no_rejects = Empty("No row was rejected", "Every row of every file was used or set aside.")
-        holder = QWidget()
-        self._rejects_stack = QStackedLayout(holder)
-        self._rejects_stack.addWidget(self.rejects)
-        self._rejects_stack.addWidget(self.no_rejects)
-        below = QFrame()
+        self.below = below = QFrame()
         below.setObjectName("card")
         column = QVBoxLayout(below)
         column.setContentsMargins(1, 12, 1, 1)
         self.rejects_title.setContentsMargins(14, 0, 14, 0)
         column.addWidget(self.rejects_title)
-        column.addWidget(holder, 1)
+        column.addWidget(self.rejects, 1)
         self.splitter = QSplitter(Qt.Orientation.Vertical)
         self.splitter.setChildrenCollapsible(False)
         self.splitter.setHandleWidth(14)
@@ -54,14 +49,13 @@ class FilesPage(Page):
         self.show_sheet(sheet)
         self.rejects.set_sheet(rejects)
         self.rejects_title.setText(figures.count(rejects.length, "rejected row"))
-        self.rejects_title.setVisible(rejects.length > 0)
-        self._rejects_stack.setCurrentIndex(0 if rejects.length else 1)
+        self.below.setVisible(rejects.length > 0)
 
     def count(self) -> int | None:
         return None
 
     def panes(self) -> list[QWidget]:
-        return [*super().panes(), self.rejects]
+        return [*super().panes(), *((self.rejects,) if self.below.isVisible() else ())]
 
     def back(self) -> bool:
         if self.rejects.hasFocus():

@@ -54,7 +54,7 @@ class PaymentsPage(Page):
             self.header.say(f"{agree:,} agreed", told)
         self.show_sheet(sheet)
         if not sheet.length:
-            self.detail.show_row(None, None, -1)
+            self.detail.show_row(None, -1)
         self.detail.setVisible(bool(sheet.length))
 
     def count(self) -> int | None:
@@ -98,4 +98,4 @@ class PaymentsPage(Page):
         if self._loaded is None:
             return
         item_row = int(self.sheet.data.rows[row]) if row >= 0 and self.sheet is not None else -1
-        self.detail.show_row(self._loaded.day, self._loaded.overview, item_row)
+        self.detail.show_row(self._loaded, item_row)
