@@ -55,8 +55,28 @@ def tidy(text: str) -> str:
     return plain.removeprefix("+")
 
 
-def mark_evidence(texts: Sequence[str]) -> tuple[set[str], bool]:
+_GROUPED = {
+    # every figure in one style, and figures that prove its mark: both marks, two group marks, or no three digits behind the only one
+    ".": (r"^-?(\d{1,3}(,\d{3})+|\d*)(\.\d+)?$", r",.*\.|,.*,|\.(\d{1,2}|\d{4,})$|^-?(0?|\d{4,})\.\d{3}$"),
+    ",": (r"^-?(\d{1,3}(\.\d{3})+|\d*)(,\d+)?$", r"\..*,|\..*\.|,(\d{1,2}|\d{4,})$|^-?(0?|\d{4,}),\d{3}$"),
+}
+
+
+def mark_evidence(column: pa.Array) -> tuple[set[str], bool]:
     """Decimal marks that some text proves ("." or ","), and whether some text leaves it open.
+
+    Columns in one plain style are looked at whole; only others are looked at text by text.
+    """
+    for mark, (style, proof) in _GROUPED.items():
+        if pc.all(pc.match_substring_regex(column, style)).as_py() is not False:
+            if pc.any(pc.match_substring_regex(column, proof)).as_py():
+                return {mark}, False
+            return set(), bool(pc.any(pc.match_substring_regex(column, "[.,]")).as_py())
+    return _mark_evidence(pc.unique(column).to_pylist())
+
+
+def _mark_evidence(texts: Sequence[str]) -> tuple[set[str], bool]:
+    """The same, one text after the other.
 
     A text that is no number in either style (1,000O) proves nothing: it costs its own row, not the file.
     """
@@ -124,16 +144,15 @@ def amounts(column: pa.Array, digits: np.ndarray, mark: str = ".", scale: int = 
     column = trimmed(column)
     blank = pc.equal(column, "").to_numpy(zero_copy_only=False)
     bad = np.zeros(len(column), np.bool_)
-    if mark == ".":
-        values, plain = _scaled(column, 4, _PLAIN)
-        values, plain = values.copy(), plain & ~blank
-    else:
-        values, plain = np.zeros(len(column), np.int64), np.zeros(len(column), np.bool_)
-        rewritten = pc.replace_substring(pc.replace_substring(column, ".", ""), ",", ".")
-        shaped = pc.match_substring_regex(column, r"^-?\d{1,3}(\.\d{3})*(,\d{1,4})?$|^-?\d{1,13}(,\d{1,4})?$")
-        shaped = shaped.to_numpy(zero_copy_only=False)
-        values, plain = _scaled(pc.if_else(pa.array(shaped), rewritten, "x"), 4, _PLAIN)
-        values, plain = values.copy(), plain & shaped & ~blank
+    values, plain = _scaled(column, 4, _PLAIN)
+    values, plain = values.copy(), plain & ~blank
+    rest = np.flatnonzero(~plain & ~blank)
+    if mark == ",":
+        # 1.234 is plain to look at, but here the point groups thousands
+        rest = np.flatnonzero(~blank)
+        plain = np.zeros(len(column), np.bool_)
+    if len(rest):
+        _grouped(column.take(pa.array(rest)), rest, mark, values, plain)
     values *= scale
     step = 10 ** (4 - digits.astype(np.int64))
     left = values % step
@@ -144,6 +163,19 @@ def amounts(column: pa.Array, digits: np.ndarray, mark: str = ".", scale: int = 
         _odd_amounts(column, odd, digits, mark, scale, values, bad)
     values[blank | bad] = MISSING
     return Cells(values, bad, "is not an amount in the currency's units, or has more decimals than the currency; correct it.")
+
+
+def _grouped(part: pa.Array, rows: np.ndarray, mark: str, values: np.ndarray, plain: np.ndarray) -> None:
+    """Figures with grouped thousands (or a decimal comma), written plain and converted whole."""
+    group = "," if mark == "." else "."
+    escaped = {".": r"\.", ",": ","}
+    shape = rf"^-?(\d{{1,3}}({escaped[group]}\d{{3}})*|\d{{1,13}})({escaped[mark]}\d{{1,4}})?$"
+    shaped = pc.match_substring_regex(part, shape)
+    written = pc.replace_substring(pc.replace_substring(part, group, ""), mark, ".")
+    found, good = _scaled(pc.if_else(shaped, written, "x"), 4, _PLAIN)
+    good = good & shaped.to_numpy(zero_copy_only=False)
+    values[rows[good]] = found[good]
+    plain[rows[good]] = True
 
 
 def _odd_amounts(

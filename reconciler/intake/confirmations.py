@@ -12,6 +12,8 @@ from pathlib import Path
 from typing import Any
 
 import numpy as np
+import pyarrow as pa
+import pyarrow.compute as pc
 
 from reconciler.intake import cells, layouts
 from reconciler.intake.layouts import Layout
@@ -105,12 +107,11 @@ def _columns(sheet: Sheet, layout: Layout, known: Known) -> dict[str, int]:
 
 def _references(sheet: Sheet, found: dict[str, int], open_facts: dict[str, list[int]], known: Known) -> None:
     """Reference columns by whose references their values are."""
-    ours = set(known.tickets["ticket"].values.to_pylist())
-    theirs = set(known.tickets["broker_reference"].values.to_pylist())
+    ours, theirs = known.tickets["ticket"].values, known.tickets["broker_reference"].values
 
-    def share(place: int, words: set[str]) -> float:
-        texts = [t for t in sheet.text(place).values.to_pylist() if t]
-        return sum(t in words for t in texts) / len(texts) if texts else 0.0
+    def share(place: int, words: pa.Array) -> float:
+        texts = sheet.text(place).values
+        return float(pc.mean(pc.is_in(texts, value_set=words)).as_py() or 0.0) if len(texts) else 0.0
 
     for fact, words in (("desk_reference", ours), ("broker_reference", theirs)):
         places = open_facts.pop(fact, [])
@@ -174,9 +175,9 @@ def _decimal(sheet: Sheet, columns: dict[str, int]) -> str:
     undecided: list[int] = []
     for fact in NUMBERS:
         if fact in columns:
-            texts = sheet.text(columns[fact]).values.to_pylist()
+            texts = cells.trimmed(sheet.column(columns[fact]))
             if fact == "price":
-                texts = [t for t in texts if not any(mark in t for mark in "-/':+")]
+                texts = texts.filter(pc.invert(pc.match_substring_regex(texts, "[-/':+]")))
             found, open_ = cells.mark_evidence(texts)
             proven |= found
             if open_:

@@ -153,7 +153,10 @@ def superseded(sheet: Sheet, columns: Mapping[str, Any], key: Sequence[str], kee
     rows = sheet.used()
     if not len(rows):
         return
-    ranks = [columns[name].rank()[rows] for name in key]
+    last = columns[key[-1]].codes[rows]
+    if len(rows) == len(columns[key[-1]].values) and np.bincount(last[last >= 0], minlength=1).max() <= 1:
+        return
+    ranks = [columns[name].codes[rows].astype(np.int64) for name in key]
     known = np.logical_and.reduce([columns[name].known()[rows] for name in key])
     status = columns["status"][rows].astype(np.int64)
     # only keys that occur more than once need a closer look
@@ -314,8 +317,8 @@ def _twice(own: Own, columns: Mapping[str, Any]) -> None:
 
 
 def _slips(own: Own, bond: Words) -> None:
-    wrong = [identifiers.check_digit_wrong(text) for text in bond.values.to_pylist()]
-    rows = np.flatnonzero(np.array([*wrong, False])[bond.codes] & (own.sheet.fate != SET_ASIDE))
+    wrong = identifiers.check_digits_wrong(bond.values)
+    rows = np.flatnonzero(np.append(wrong, False)[bond.codes] & (own.sheet.fate != SET_ASIDE))
     for row in rows.tolist():
         reason = "is written like an ISIN but its check digit is wrong; the row is used under this code, check it."
         own.notes.append(Problem(own.sheet.raw.file, int(own.sheet.raw.lines[row]), "bond", bond.text(row), reason, "check-digit"))
