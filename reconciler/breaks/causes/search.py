@@ -84,37 +84,34 @@ class Search:
         self.base = reckoning.pay(self.facts)
         self.told = {name: getattr(cases.told, name) for name in _FACTS}
         self.silent = {name: column == MISSING for name, column in self.told.items()}
+        self._silent_amounts = bool(self.silent["amount"].any())
         self.right = self._right()
         self.fits = Fits()
         self.numbers: dict[str, int] = {}
         self.open = np.ones(len(cases), np.bool_)
-        self.amounts: list[Array] = []
-        self.loose: list[Array] = []
+        self.tried: list[tuple[Payment, Array, Array]] = []
+        self._kinds: dict[tuple[tuple[int, ...], ...], Array] = {}
 
     def _right(self) -> Array:
         """The figure that the told one is measured against: the amount as the terms have it."""
         return self.cases.terms.amount
 
-    def consistent(self, payment: Payment) -> Array:
-        """Where every told figure but the amount comes out."""
-        ok = np.ones(len(self.cases), np.bool_)
+    def consistent(self, payment: Payment, rows: Array) -> Array:
+        """Where every told figure but the amount comes out, for some of the cases."""
+        ok = np.ones(len(rows), np.bool_)
         for name in _FACTS[:3]:
-            ok &= self.silent[name] | (self.told[name] == getattr(payment, name))
+            ok &= self.silent[name][rows] | (self.told[name][rows] == getattr(payment, name)[rows])
         return ok
 
-    def try_out(self, hypothesis: Hypothesis, payment: Payment, applies: Array) -> None:
-        """Holds one recomputed payment against what was told, for the cases still open."""
-        same_facts = self.consistent(payment) & applies
-        amount = payment.amount
-        fits = same_facts & (self.silent["amount"] | (self.told["amount"] == amount)) & self.open
+    def try_out(self, hypothesis: Hypothesis, payment: Payment, applies: Array, amount: Array | None = None) -> None:
+        """Holds one recomputed payment against what was told, for the cases still open; `amount` stands for the payment's own."""
+        amount = payment.amount if amount is None else amount
         self.fits.tried += 1
-        # only figures that the other told facts allow can fit by accident; 
-        # `loose` has the accrued of every try, for the case that the told accrued is the noise and the amount follows it
-        known = applies & (amount != MISSING)
-        self.amounts.append(np.where(same_facts & known, amount, self.right))
-        accrued = self.cases.terms.accrued
-        self.loose.append(np.where(known & (payment.accrued != MISSING), payment.accrued, accrued))
-        found = np.flatnonzero(fits)
+        self.tried.append((payment, amount, applies))
+        near = np.flatnonzero((self.told["amount"] == amount) & applies & self.open)
+        if self._silent_amounts:
+            near = np.union1d(near, np.flatnonzero(self.silent["amount"] & applies & self.open))
+        found = near[self.consistent(payment, near)] if len(near) else near
         if len(found):
             self.fits.case.append(found)
             self.fits.number.append(np.full(len(found), len(self.fits.hypotheses)))
@@ -122,20 +119,32 @@ class Search:
 
     def kinds(self, *variants: Variant) -> Array:
         """Where all the variants apply to the kind of payment."""
-        ok = np.ones(len(self.cases), np.bool_)
-        for variant in variants:
-            ok &= np.isin(self.cases.kind, variant.kinds)
-        return ok
+        key = tuple(variant.kinds for variant in variants)
+        if key not in self._kinds:
+            ok = np.ones(len(self.cases), np.bool_)
+            for kinds in key:
+                ok &= np.isin(self.cases.kind, kinds)
+            self._kinds[key] = ok
+        return self._kinds[key]
 
     def chances(self, rows: Array) -> Array:
-        """Expected accidental fits for some of the cases, given all figures tried so far."""
+        """Expected accidental fits for some of the cases, given all figures tried so far.
+
+        Only figures that the other told facts allow can fit by accident. Where the told accrued may be the noise itself and the amount
+        merely follows it, the accrued of every try counts.
+        """
         right, told = self.right[rows], self.told["amount"][rows]
-        strict = accidental(right, told, np.stack([column[rows] for column in self.amounts], axis=1))
-        right, told = self.cases.terms.accrued[rows], self.told["accrued"][rows]
-        asked = ~self.silent["accrued"][rows] & (told != right)
-        told = np.where(asked, told, right)
-        loose = accidental(right, told, np.stack([column[rows] for column in self.loose], axis=1))
-        return np.where(asked & (loose >= LOOSE), np.maximum(strict, loose), strict)
+        accrued = self.cases.terms.accrued[rows]
+        strict, loose = np.empty((len(rows), len(self.tried)), np.int64), np.empty((len(rows), len(self.tried)), np.int64)
+        for place, (payment, amount, applies) in enumerate(self.tried):
+            known = applies[rows] & (amount[rows] != MISSING)
+            strict[:, place] = np.where(known & self.consistent(payment, rows), amount[rows], right)
+            mine = payment.accrued[rows]
+            loose[:, place] = np.where(known & (mine != MISSING), mine, accrued)
+        by_amount = accidental(right, told, strict)
+        asked = ~self.silent["accrued"][rows] & (self.told["accrued"][rows] != accrued)
+        by_accrued = accidental(accrued, np.where(asked, self.told["accrued"][rows], accrued), loose)
+        return np.where(asked & (by_accrued >= LOOSE), np.maximum(by_amount, by_accrued), by_amount)
 
 
 def _differs(payment: Payment, base: Payment) -> Array:
@@ -229,7 +238,7 @@ def _slipped(search: Search, hypothesis: Hypothesis, payment: Payment, lowest: i
     """Slips of the pen in the amount, on top of a payment reckoned some way."""
     for slip, _place, typed in slips.candidates(payment.amount, lowest):
         variant = Variant(SLIP_CAUSES[slip.name], "whole", f"{slip.wording} in the amount", lambda p: p, (0, 1, 2))
-        search.try_out((*hypothesis, variant), payment.changed(amount=typed), typed != MISSING)
+        search.try_out((*hypothesis, variant), payment, typed != MISSING, typed)
 
 
 def _slipped_parts(search: Search) -> None:
@@ -289,30 +298,51 @@ def _pairs(search: Search, done: list[tuple[Variant, Payment]], chance: Array) -
     """Two causes at once, for the cases that no single one explains."""
     rest = np.flatnonzero(search.open)
     part = Search(search.cases.take(rest), search.facts.terms)
-    few = [(variant, _rows(payment, rest)) for variant, payment in done]
+    # a variant that changes nothing here can be no half of a pair
+    few = [
+        (variant, _rows(payment, rest))
+        for variant, payment in done
+        if (_differs(payment, search.base) & search.kinds(variant))[rest].any()
+    ]
     by_part: dict[str, list[tuple[Variant, Payment]]] = {}
     for variant, payment in few:
         by_part.setdefault(variant.part, []).append((variant, payment))
     _dated_day_counts(part)
+    _two_parts(part, by_part)
+    _with_wholes(part, few)
+    _faces(part, by_part.get("face", []))
+    _join(search, part, rest, chance)
+
+
+def _two_parts(part: Search, by_part: dict[str, list[tuple[Variant, Payment]]]) -> None:
+    """Two of accrual, price and fees: their differences add up, so the amount is the sum of both changes."""
     base = part.base
     for a, b in (("accrual", "price"), ("accrual", "fees"), ("price", "fees")):
-        for one, first in by_part[a]:
-            for two, second in by_part[b]:
-                main = second.principal if b == "price" else first.principal if a == "price" else base.principal
-                minor, days = (first.accrued, first.accrued_days) if a == "accrual" else (base.accrued, base.accrued_days)
-                fees = second.fees if b == "fees" else base.fees
-                amount = sums(base.kind, base.side, main, minor, fees)
-                both = base.changed(principal=main, accrued=minor, accrued_days=days, fees=fees, amount=amount)
-                part.try_out((one, two), both, part.kinds(one, two) & _differs(first, base) & (second.amount != base.amount))
+        changes = [(v, p, (p.amount != MISSING) & (p.amount != base.amount)) for v, p in by_part.get(b, [])]
+        for one, first in by_part.get(a, []):
+            usable = (first.amount != MISSING) & _differs(first, base)
+            for two, second, changed in changes:
+                both = part.kinds(one, two) & usable & changed
+                if not both.any():
+                    continue
+                principal = second.principal if b == "price" else first.principal
+                joined = first.changed(principal=principal)
+                part.try_out((one, two), joined, both, first.amount + second.amount - base.amount)
+
+
+def _with_wholes(part: Search, few: list[tuple[Variant, Payment]]) -> None:
+    """A changed part, put together in a wrong way as well."""
+    base = part.base
     for one, first in few:
         if one.part == "whole":
             continue
+        changed = _differs(first, base) & (first.amount != MISSING)
         for two in WHOLE:
+            applies = part.kinds(one, two) & changed
+            if not applies.any():
+                continue
             amount = np.asarray(two.make(first, part.cases.digits))
-            changes = _differs(first, base) & (amount != first.amount)
-            part.try_out((one, two), first.changed(amount=amount), part.kinds(one, two) & changes)
-    _faces(part, by_part.get("face", []))
-    _join(search, part, rest, chance)
+            part.try_out((one, two), first, applies & (amount != first.amount), amount)
 
 
 def _faces(part: Search, faces: list[tuple[Variant, Payment]]) -> None:
@@ -362,7 +392,6 @@ def _join(search: Search, part: Search, rest: Array, chance: Array) -> None:
     search.fits.tried += part.fits.tried
     explained = _explained(part)
     if len(explained):
-        single = [column[rest] for column in search.amounts]
-        part.amounts = single + part.amounts
-        part.loose = [column[rest] for column in search.loose] + part.loose
+        before = [(_rows(payment, rest), amount[rest], applies[rest]) for payment, amount, applies in search.tried]
+        part.tried = before + part.tried
         chance[rest[explained]] = part.chances(explained)
