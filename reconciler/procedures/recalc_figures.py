@@ -200,7 +200,10 @@ def _chunk(read: _Cells, asked: _Asked, rows: np.ndarray) -> tuple[np.ndarray, .
     told = np.where(discounted, asked.discount_e12[rows], np.where(yielding, _e12(clean), asked.price_e12[rows]))
     settled = settlement.settle(quoted, rows, settle, asked.face[rows], told)
     clean = np.where(yielding, clean, settled.price_per100)
-    yields = np.where(yielding, given, pricing.yield_from_price(terms, rows, settle, clean, convention))
+    # The Treasury reckons a bill's investment rate from the price as it prints it, to six decimals (its auction results).
+    printed = half_up(*_ratio(quoted, rows, settle, told, 10**6)) / 1e6
+    from_price = np.where(discounted & (convention == pricing.INVESTMENT), printed, clean)
+    yields = np.where(yielding, given, pricing.yield_from_price(terms, rows, settle, from_price, convention))
     _say(read, rows[yielding & ~np.isfinite(clean)], "yield", "gives no price under this convention; correct the yield.")
     lost = ~yielding & settled.sound & ~np.isfinite(yields)
     name = "no yield between -99 % and 1,000 % gives this price; correct the price."
@@ -208,13 +211,15 @@ def _chunk(read: _Cells, asked: _Asked, rows: np.ndarray) -> tuple[np.ndarray, .
     _say(read, rows[lost & discounted], "discount", name)
     duration, point = pricing.risk(terms, rows, settle, yields, convention)
     scale = asked.face[rows] / (100.0 * 10.0 ** terms.currency_digits[rows]) * accrual.factors(terms, rows, settle) / ONE
-    price = np.where(discounted, half_up(*_ratio(quoted, rows, settle, told)), _e12(clean))
+    price = np.where(discounted, half_up(*_ratio(quoted, rows, settle, told, ONE)), _e12(clean))
     return price, _e12(yields), _e12(duration), _e12(point * scale), settled.principal_minor
 
 
-def _ratio(terms: Terms, rows: np.ndarray, settle: np.ndarray, told: np.ndarray) -> tuple[list[Any], list[Any]]:
+def _ratio(
+    terms: Terms, rows: np.ndarray, settle: np.ndarray, told: np.ndarray, scale: int
+) -> tuple[list[Any], list[Any]]:
     above, below = settlement.price_ratio(terms, rows, settle, told)
-    return [above, ONE], [below]
+    return [above, scale], [below]
 
 
 def _say(read: _Cells, rows: np.ndarray, name: str, reason: str) -> None:
