@@ -27,6 +27,7 @@ from reconciler.intake import folder as intake
 from reconciler.matching import cash as cash_matching
 from reconciler.matching import trades as trade_matching
 from reconciler.problems import KnownError, Problem
+from reconciler.procedures import disputes
 from reconciler.procedures import totals as totals_of
 from reconciler.records import BREAK_KINDS, STATES, Table, Words, concat, unify
 from reconciler.settings import Settings
@@ -128,14 +129,19 @@ def pair_cash(state: State) -> State:
 
 def reckon_again(state: State) -> State:
     """Reckoning disputed trades by the cash"""
-    count = len(state.trades)
-    bank = state.items.take(np.arange(count))
-    trades = _trades(state, bank["bank_minor"], bank["bank_date"])
-    if all(_equal(trades[name], state.trades[name]) for name in ("terms_minor", "terms_date", "face_minor", "side", "price_e12")):
+    source = state.source
+    rows = disputes.disputed(state.trades, state.items, source.tickets, source.confirmations)
+    if not len(rows):
         return state
-    # what is held may change with the facts of a trade, and so may the entry that pays it
-    again = expect_payments(replace(state, trades=trades))
-    return _with_cash(again, concat([again.trades, again.payments]))
+    part = replace(state, pairs=disputes.part_of(state.pairs, rows))
+    anew = _trades(part, state.items["bank_minor"][rows], state.items["bank_date"][rows])
+    if disputes.same(anew, state.trades.take(rows), disputes.RECKONED):
+        return state
+    again = expect_payments(replace(state, trades=disputes.put_in(state.trades, rows, anew)))
+    if not disputes.same(again.payments, state.payments):
+        return _with_cash(again, concat([again.trades, again.payments]))
+    items = disputes.put_in(state.items, rows, anew)
+    return replace(again, items=items, given=replace(state.given, items=items))
 
 
 def find_breaks(state: State) -> State:
@@ -200,12 +206,6 @@ def _trades(state: State, bank_minor: Any = None, bank_date: Any = None) -> Tabl
     return settlements.expect_trades(
         state.terms, source.bonds, source.tickets, source.confirmations, state.pairs, bank_minor, bank_date
     )
-
-
-def _equal(one: np.ndarray, other: np.ndarray) -> bool:
-    if one.dtype.kind == "M":
-        one, other = one.view(np.int64), other.view(np.int64)
-    return bool(np.array_equal(one, other))
 
 
 def _faults(state: State) -> Words:
