@@ -102,8 +102,22 @@ class Words:
 
     def where(self, mask: np.ndarray, other: Words) -> Words:
         """Own text where `mask` holds, else the other column's."""
-        mine, theirs = unify(self, other)
-        return Words(np.where(mask, mine.codes, theirs.codes), mine.values)
+        rest = np.flatnonzero(~np.asarray(mask))
+        mine, theirs = unify(self, other.take(rest).compact())
+        codes = mine.codes.copy()
+        codes[rest] = theirs.codes
+        return Words(codes, mine.values)
+
+    def compact(self) -> Words:
+        """The same texts over a vocabulary of only those that occur."""
+        used = np.zeros(len(self.values) + 1, np.bool_)
+        used[self.codes] = True
+        kept = np.flatnonzero(used[:-1])
+        if len(kept) == len(self.values):
+            return self
+        place = np.full(len(self.values) + 1, -1, np.int32)
+        place[kept] = np.arange(len(kept), dtype=np.int32)
+        return Words(place[self.codes], self.values.take(pa.array(kept)))
 
     def codes_in(self, values: pa.Array) -> np.ndarray:
         """Every row's code in another vocabulary (int32; -1 when blank or absent there)."""
@@ -125,9 +139,33 @@ class Words:
 
 
 def unify(*columns: Words) -> tuple[Words, ...]:
-    """The same columns over one shared vocabulary, so that equal codes mean equal text."""
-    values = pc.unique(pa.concat_arrays([column.values for column in columns]))
-    return tuple(Words(column.codes_in(values), values) for column in columns)
+    """The same columns over one shared vocabulary, so that equal codes mean equal text: the first column's, then what others add."""
+    values = columns[0].values
+    codes = [columns[0].codes]
+    for column in columns[1:]:
+        own, values = _added(values, column.values)
+        codes.append(np.append(own, np.int32(-1))[column.codes])
+    return tuple(Words(own, values) for own in codes)
+
+
+def _added(values: pa.Array, more: pa.Array) -> tuple[np.ndarray, pa.Array]:
+    """The code of each of `more` in a vocabulary, and that vocabulary with those added that it lacks."""
+    if more is values or more.equals(values):
+        return np.arange(len(values), dtype=np.int32), values
+    coded = pc.dictionary_encode(more)
+    distinct, place = coded.dictionary, coded.indices.to_numpy(zero_copy_only=False)
+    found = np.full(len(distinct), -1, np.int32)
+    if len(distinct) and len(values):
+        # A table of texts is made of the smaller side, and the larger one is looked up in it.
+        if len(distinct) < len(values):
+            there = pc.fill_null(pc.index_in(values, value_set=distinct), -1).to_numpy(zero_copy_only=False)
+            hit = np.flatnonzero(there >= 0)
+            found[there[hit]] = hit
+        else:
+            found[:] = pc.fill_null(pc.index_in(distinct, value_set=values), -1).to_numpy(zero_copy_only=False)
+    new = np.flatnonzero(found < 0)
+    found[new] = len(values) + np.arange(len(new), dtype=np.int32)
+    return found[place], pa.concat_arrays([values, distinct.take(pa.array(new))]) if len(new) else values
 
 
 def same_text(one: Words, other: Words) -> np.ndarray:
