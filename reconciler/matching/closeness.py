@@ -2,7 +2,7 @@
 
 With account, currency and bond equal, direction right and the day near, the entry and the payment are paired if they clearly belong to
 each other more than to anything else: amounts near in proportion, days near, the narrative naming the kind. Without a bond told
-only amounts within a quarter of a percent (or a bank charge) are near enough, and only where nothing else comes near at all.
+only amounts within a bank charge are near enough, and only where nothing else comes near at all.
 """
 
 from __future__ import annotations
@@ -22,7 +22,8 @@ EARLY, LATE = 5, 10
 # Natural logarithms of the proportion between booked and expected amount.
 _FAR, _FAR_IF_SURE = float(np.log(3)), float(np.log(15))
 _PER_DAY, _MARGIN = 0.03, 0.4
-_SHARE, _CHARGE, _CHARGE_SHARE = 0.0025, 3000, 0.05
+# A bank charge, in the smallest unit. A share of the amount would be too wide: on a morning of thousands some stranger is always near.
+_CHARGE, _CHARGE_SHARE = 3000, 0.05
 
 
 def pair_close(board: Board) -> None:
@@ -86,8 +87,7 @@ def _without_bond(board: Board) -> None:
     group_e = board.e_account[entries] * size + board.e_currency[entries]
     amount_i, amount_e = board.i_expected[payments], board.e_amount[entries]
     order = np.lexsort((amount_i, group_i))
-    near = np.maximum((np.abs(amount_e) * _SHARE).astype(np.int64),
-                      np.minimum(_CHARGE, (np.abs(amount_e) * _CHARGE_SHARE).astype(np.int64)))  # fmt: skip
+    near = np.minimum(_CHARGE, (np.abs(amount_e) * _CHARGE_SHARE).astype(np.int64))
     low = _place(group_i[order], amount_i[order], group_e, amount_e - near, "left")
     high = _place(group_i[order], amount_i[order], group_e, amount_e + near, "right")
     few = (high - low <= 8) & (board.e_account[entries] >= 0)
