@@ -21,6 +21,7 @@ from reconciler.money import MISSING
 
 Array = np.ndarray[Any, Any]
 
+_ACT_365F = NUMBERS["Act/365F"]
 _THIRTY = np.array([name.startswith("30") for name in NUMBERS])
 
 
@@ -127,7 +128,11 @@ def _coupons(terms: Terms, rows: Array, settle: Array, usable: Array, ex: Array)
     periods = schedules.period_ending(terms, bond, dates)
     above, below = accrual.coupon_fraction(terms, bond, periods)
     rate = in_force(terms.rate_offsets, terms.rate_from, terms.rate_e9s, bond, periods.start, terms.rate_e9[bond])
-    amount = rate / 1e9 * above / below
+    # The yield of an Act/365F bond takes its regular coupons as equal, though interest is counted in days (South African
+    # and Japanese practice: the exchange's worked price of a South African bond comes out only so).
+    equal = periods.regular & (terms.day_count[bond] == _ACT_365F) & ~terms.accrual_adjusted[bond]
+    share = np.where(equal, 1 / np.maximum(terms.frequency[bond], 1), above / below)
+    amount = rate / 1e9 * share
     first = np.ones(len(owner), np.bool_)
     first[1:] = owner[1:] != owner[:-1]
     amount = np.where(first & ex[owner], 0.0, amount)

@@ -47,7 +47,7 @@ def resolved(
     assert all(set(row) <= known for row in rows)
     told: dict[str, Any] = {}
     for name in TEXTS:
-        words = [row.get(name, "USD" if name == "currency" else "") for row in rows]
+        words = [row.get(name, "USD" if name == "currency" and "market" not in row else "") for row in rows]
         distinct = sorted(set(words) - {""})
         told[name] = (np.array([distinct.index(word) if word else -1 for word in words], np.int64), distinct)
     for name in DATES:
