@@ -135,12 +135,23 @@ class Studio:
         page = self.window.page
         page.show_all()
         if page.table.model().rowCount():
-            page.table.go_to(0)
+            page.table.go_to(self._telling(page.table.model()) if tab else 0)
+            page.table.scrollToTop()
         if tab:
             page.show_tab(tab)
         elif hasattr(page, "show_tab"):
             page.show_tab("accounts")
         return self.window
+
+    @staticmethod
+    def _telling(model: Any) -> int:
+        """A row whose cause is proved and has a working worth looking at."""
+        why = next((i for i, column in enumerate(model.sheet.columns) if column.key == "why"), -1)
+        for row in range(min(model.rowCount(), 200)):
+            cell = model.cell(row, why)
+            if cell.glyph == "✓" and "trade" not in cell.text and "digit" not in cell.text.lower():
+                return row
+        return 0
 
     def _empty(self) -> Any:
         self._show()
@@ -204,8 +215,10 @@ class Studio:
         self._page("breaks")
         day = self.window.loaded.day
         keep = np.array([text != "break" for text in day.items["state"].to_list()])
-        calm = dataclasses.replace(day, items=day.items.take(keep), breaks=day.breaks.take(np.zeros(0, np.int64)))
-        self._put(calm)
+        paid = day.allocations.take(keep[day.allocations["item_row"]])
+        paid = paid.with_columns(item_row=(np.cumsum(keep) - 1)[paid["item_row"]])
+        none = day.breaks.take(np.zeros(0, np.int64))
+        self._put(dataclasses.replace(day, items=day.items.take(keep), breaks=none, allocations=paid))
         return self.window
 
     def _large(self) -> Any:
@@ -218,7 +231,8 @@ class Studio:
         at = np.tile(np.arange(rows), times)[:1_000_000]
         breaks = day.breaks.take(at).with_columns(rank=np.arange(len(at)) + 1, item_row=np.arange(len(at)))
         items = day.items.take(np.asarray(day.breaks["item_row"])[at])
-        self._put(dataclasses.replace(day, items=items, breaks=breaks))
+        paid = day.allocations.take(np.zeros(0, np.int64))
+        self._put(dataclasses.replace(day, items=items, breaks=breaks, allocations=paid))
         return self.window
 
     def _put(self, day: Any) -> None:

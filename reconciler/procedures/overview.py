@@ -14,6 +14,7 @@ from typing import Any
 import numpy as np
 
 from reconciler import money
+from reconciler.breaks.causes.search import FOLLOWS
 from reconciler.records import MISSING, PARTIES, STATES, Table, Words
 
 
@@ -31,12 +32,13 @@ class NetDifference:
 class Overview:
     """One value per item of the day, plus the day's counts.
 
-    `first_break` and `party_breaks[party]` are row numbers into the day's breaks (-1 none); `party_bits` has bit i set when
+    `first_break`, `telling_break` (the first whose cause is more than that it follows from another) and `party_breaks[party]` are row numbers into the day's breaks (-1 none); `party_bits` has bit i set when
     party i of records.PARTIES has a break; `net_minor` is MISSING where there is nothing to compare; `cash_row` is the first bank
     entry allocated to the item (-1 none).
     """
 
     first_break: np.ndarray
+    telling_break: np.ndarray
     break_count: np.ndarray
     party_breaks: tuple[np.ndarray, ...]
     party_bits: np.ndarray
@@ -59,6 +61,7 @@ def overview(day: Any) -> Overview:
     item_row = np.asarray(breaks["item_row"], np.int64)
     # the last assignment to a row stands, so breaks are laid down from the least urgent to the most urgent
     order = np.argsort(np.asarray(breaks["rank"]), kind="stable")[::-1]
+    telling = order[np.argsort(_numbers(breaks["cause"], (FOLLOWS.name,))[order] < 0, kind="stable")]
     parties = _numbers(breaks["party"], PARTIES)
     kinds, kind_of = _vocabulary(breaks["break"])
     kind_bits = np.zeros(rows, np.int64)
@@ -77,6 +80,7 @@ def overview(day: Any) -> Overview:
     counts = {name: int(np.count_nonzero(state == number)) for number, name in enumerate(STATES)}
     return Overview(
         first_break=_lay_down(rows, item_row[order], order),
+        telling_break=_lay_down(rows, item_row[telling], telling),
         break_count=np.bincount(item_row, minlength=rows).astype(np.int32),
         party_breaks=tuple(by_party),
         party_bits=party_bits,

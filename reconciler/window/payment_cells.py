@@ -34,6 +34,7 @@ class Payments:
         self.rows = np.asarray(rows, np.int64)
         self.year = day.date.astype(object).year if isinstance(day.date, np.datetime64) else day.date.year
         self.first = overview.first_break[self.rows]
+        self.telling = overview.telling_break[self.rows]
         used = np.unique(overview.digits[self.rows]) if len(rows) else np.array([2])
         # decimal points align on the finest currency in the list
         self.finest = int(used.max())
@@ -47,6 +48,10 @@ class Payments:
         """A column of the rows' first breaks; blank where a row has none."""
         column, rows = self.breaks[name], self.first[at]
         return column.take(rows) if isinstance(column, Words) else gather(column, rows)
+
+    def of_telling(self, name: str, at: Rows) -> Words:
+        """A column of text of the breaks that say most about the rows; blank where a row has none."""
+        return self.breaks[name].take(self.telling[at])
 
     def whole(self, name: str) -> Any:
         """A column of the items for every row of the list."""
@@ -154,20 +159,21 @@ def break_cell(kind: str, found: str, difference: str, year: int, shift: int = 0
 
 
 def days_apart(difference: str, kind: str = "") -> str:
-    """ "-1" as "1 day early", for trade dates "trade date, 1 day early"."""
+    """ "-1" as "1 day early", for trade dates "trade date −1 d"."""
     try:
         days = int(float(difference))
     except ValueError:
         return kind
-    words = f"{figures.count(abs(days), 'day')} {'early' if days < 0 else 'late'}"
-    return f"{kind}, {words}" if kind == "trade date" else words
+    if kind == "trade date":
+        return f"{kind} {figures.MINUS if days < 0 else '+'}{abs(days)} d"
+    return f"{figures.count(abs(days), 'day')} {'early' if days < 0 else 'late'}"
 
 
 def why_cells(data: Payments, at: Rows) -> list[Cell]:
     """The cause of the most urgent break, how certain it is, and how many more breaks the payment has."""
-    causes, sentences = texts(data.of_break("cause", at)), texts(data.of_break("explanation", at))
-    kinds = texts(data.of_break("break", at))
-    certainties = texts(data.of_break("certainty", at))
+    causes, sentences = texts(data.of_telling("cause", at)), texts(data.of_telling("explanation", at))
+    kinds = texts(data.of_telling("break", at))
+    certainties = texts(data.of_telling("certainty", at))
     more = (data.overview.break_count[data.rows[at]] - 1).tolist()
     states = data.overview.state[data.rows[at]].tolist()
     digits = data.overview.digits[data.rows[at]].tolist()

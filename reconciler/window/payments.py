@@ -62,6 +62,10 @@ def _break_rank(name: str) -> Any:
     return rank
 
 
+def _cause_rank(data: Payments) -> np.ndarray:
+    return gather(data.breaks["cause"].rank().astype(np.int64), data.telling)
+
+
 def _stake_rank(data: Payments) -> np.ndarray:
     # amounts of different currencies cannot be compared as they stand; the morning's ranking has done it in one currency
     return -gather(np.asarray(data.breaks["rank"], np.int64), data.first, 0)
@@ -78,7 +82,7 @@ COLUMNS: tuple[Column, ...] = (
            _party_rank(2, "desk_minor"), 72, right=True),
     Column("bank", "Bank", "What was booked to our cash account: = where it agrees with the terms",
            party_cells(3, "bank_minor"), _party_rank(3, "bank_minor"), 72, right=True),
-    Column("why", "Why", "The cause found for the most urgent break, and how certain it is", why_cells, _break_rank("cause"), 230,
+    Column("why", "Why", "The cause found for the most urgent break, and how certain it is", why_cells, _cause_rank, 230,
            stretch=2),
     Column("overdue", "Overdue", "Business days since the payment was due", overdue_cells, _break_rank("overdue_days"), 60,
            right=True, descending_first=True),
@@ -167,7 +171,8 @@ def payments_sheet(day: Any, overview: Any, states: tuple[str, ...]) -> Sheet:
         urgency = np.where(first >= 0, np.append(day.breaks["rank"], 0)[first], np.iinfo(np.int64).max)
         rows = rows[np.argsort(urgency, kind="stable")]
     else:
-        rows = rows[np.argsort(_day_rank(day.items["terms_date"][rows]), kind="stable")]
+        # the latest first: what was paid yesterday is looked up more often than what was paid a week ago
+        rows = rows[np.argsort(-_day_rank(day.items["terms_date"][rows]), kind="stable")]
     data = Payments(day, overview, rows)
     columns = COLUMNS if broken else QUIET_COLUMNS
     facts = ITEM_FACTS + BREAK_FACTS if broken else ITEM_FACTS

@@ -55,7 +55,7 @@ def cell_width(cell: Cell) -> int:
     lower = QFontMetrics(theme().font("small")).horizontalAdvance(cell.small)
     glyph = 20 if cell.glyph else 0
     wide = max(upper, lower + glyph) if cell.small else upper + glyph
-    return wide + 2 * PADDING + 2 + cell.shift * 10
+    return wide + 2 * PADDING + 8 + cell.shift * 10
 
 
 class Head(QHeaderView):

@@ -43,7 +43,7 @@ def test_a_payment_with_two_breaks_says_so(loaded: Loaded) -> None:
     [
         ("settlement date", "2026-04-02", "1", ("2 Apr", "1 day late", "→", "day")),
         ("payment date", "2026-03-27", "-3", ("27 Mar", "3 days early", "←", "day")),
-        ("trade date", "2026-03-26", "-1", ("26 Mar", "trade date, 1 day early", "←", "day")),
+        ("trade date", "2026-03-26", "-1", ("26 Mar", "trade date −1 d", "←", "day")),
         ("no ticket", "", "", ("no ticket", "", "∅", "silent")),
         ("unexplained cash", "42310.00", "42310.00", ("+42,310.00", "unexplained", "?", "silent")),
         ("price", "85.1", "-0.2125", ("85.1", "price −0.2125", "≠", "differ")),

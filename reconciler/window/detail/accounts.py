@@ -37,6 +37,14 @@ def breaks_of(day: Any, item_row: int) -> list[dict[str, Any]]:
     return [day.breaks.row(int(row)) for row in rows]
 
 
+def telling_first(loaded: Any, item_row: int) -> list[dict[str, Any]]:
+    """The breaks of one item, the one that says most about it first."""
+    found = breaks_of(loaded.day, item_row)
+    telling = int(loaded.overview.telling_break[item_row])
+    rank = int(loaded.day.breaks["rank"][telling]) if telling >= 0 else -1
+    return sorted(found, key=lambda one: int(one["rank"]) != rank)
+
+
 def entries_of(day: Any, item_row: int) -> np.ndarray:
     """The bank entries (row numbers into cash) that pay an item."""
     return np.asarray(day.allocations["cash_row"])[np.asarray(day.allocations["item_row"]) == item_row]

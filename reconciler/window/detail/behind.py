@@ -11,7 +11,7 @@ from typing import TYPE_CHECKING, Any
 import numpy as np
 
 from reconciler.window import figures
-from reconciler.window.detail.accounts import accounts_sheet, breaks_of
+from reconciler.window.detail.accounts import accounts_sheet, telling_first
 from reconciler.window.detail.coupons import coupons_sheet
 from reconciler.window.detail.working import working_sheet
 from reconciler.window.drawings import Strip
@@ -98,7 +98,7 @@ def differences(loaded: Loaded, row: int) -> list[Told]:
     """Every break of the payment as a sentence, the most urgent first; one line when there is none."""
     day = loaded.day
     told = []
-    for one in breaks_of(day, row):
+    for one in telling_first(loaded, row):
         title = f"{one['break'][:1].upper()}{one['break'][1:]}  ·  {one['party']}"
         told.append(Told(title, one["explanation"] or one["cause"], _LOOKS.get(one["break"], "differ")))
     state = day.items["state"].text(row)
@@ -122,7 +122,7 @@ def working(loaded: Loaded, row: int) -> Shown:
     """How the payment is reckoned, what was found, what to do next."""
     from reconciler.procedures import working as procedure
 
-    found = breaks_of(loaded.day, row)
+    found = telling_first(loaded, row)
     told = procedure.working(loaded.day, row)
     first = found[0] if found else None
     certainty = first["certainty"] if first else ""

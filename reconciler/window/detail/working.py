@@ -10,6 +10,7 @@ from collections.abc import Collection
 from typing import Any
 
 from reconciler.records import PARTIES
+from reconciler.window import figures
 from reconciler.window.sheet import Cell, Sheet
 from reconciler.window.static import static_sheet
 
@@ -30,9 +31,9 @@ def working_sheet(told: Any, broken: Collection[str]) -> Sheet:
         if line.fact in _IN_NOTES and not line.differs:
             continue
         strong = line.fact in _SUMS
-        cells = [Cell(line.fact, strong=strong), Cell(line.note, tone="soft"), Cell(line.terms, strong=strong)]
+        cells = [Cell(line.fact, strong=strong), Cell(line.note, tone="soft"), Cell(figures.minus_sign(line.terms), strong=strong)]
         for party in parties:
-            text = line.told(party)
+            text = figures.minus_sign(line.told(party))
             if party in line.differs:
                 cells.append(Cell(text or "not told", glyph="≠", tone="differ", strong=True))
             else:
