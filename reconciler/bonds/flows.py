@@ -15,7 +15,7 @@ import numpy as np
 
 from reconciler.bonds import accrual, daycounts, markets, schedules
 from reconciler.bonds.daycounts import NUMBERS
-from reconciler.bonds.schedules import Grid
+from reconciler.bonds.grid import Grid
 from reconciler.bonds.terms import Terms, in_force
 from reconciler.money import MISSING
 

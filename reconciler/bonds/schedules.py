@@ -17,8 +17,8 @@ from typing import Any
 
 import numpy as np
 
-from reconciler.bonds.dates import civil
 from reconciler.bonds.daycounts import Period
+from reconciler.bonds.grid import Grid, day_of_month
 from reconciler.bonds.terms import BUSINESS, NAT, Terms
 from reconciler.money import MISSING
 
@@ -46,51 +46,6 @@ class Coupons:
 
     def __len__(self) -> int:
         return len(self.bond_row)
-
-
-def _months(terms: Terms, rows: Array) -> Array:
-    """Months between coupons; 12 for bonds without any, so that a grid exists for yields."""
-    frequency = terms.frequency[rows]
-    return 12 // np.maximum(frequency, 1)
-
-
-def _month_number(dates: Array) -> tuple[Array, Array]:
-    year, month, day = civil(dates)
-    return (year.astype(np.int64) - 1970) * 12 + (month - 1), day.astype(np.int64)
-
-
-def _date(month: Array, day: Array, month_end: Array) -> Array:
-    """The day of a month number, the last of the month where it has no such day or month ends are kept."""
-    first = month.view("datetime64[M]").astype("datetime64[D]") if month.dtype == np.int64 else month.astype("datetime64[M]").astype("datetime64[D]")
-    following = (month.astype(np.int64) + 1).view("datetime64[M]").astype("datetime64[D]")
-    length = (following - first).astype(np.int64)
-    result: Array = first + (np.where(month_end, length, np.minimum(day, length)) - 1)
-    return result
-
-
-class Grid:
-    """The coupon grid of some rows: `at(k)` is the date k periods before the anchor (negative k: after it)."""
-
-    def __init__(self, terms: Terms, rows: Array) -> None:
-        self.month, self.day = _month_number(terms.anchor[rows])
-        self.step = _months(terms, rows).astype(np.int64)
-        self.month_end = terms.end_of_month[rows]
-
-    def at(self, k: Array) -> Array:
-        """Grid date number k of each row."""
-        return _date(self.month - k * self.step, self.day, self.month_end)
-
-    def number_at_or_before(self, dates: Array) -> Array:
-        """The smallest k whose date is on or before each day."""
-        month, _day = _month_number(dates)
-        k = -((month - self.month) // self.step)
-        return k + (self.at(k) > dates)
-
-
-def grid_after(terms: Terms, rows: Array, dates: Array) -> Array:
-    """The first grid date after each day."""
-    grid = Grid(terms, rows)
-    return grid.at(grid.number_at_or_before(dates) - 1)
 
 
 def periods_at(terms: Terms, rows: Array, dates: Array) -> Periods:
@@ -225,7 +180,7 @@ def record_dates(terms: Terms, rows: Array, unadjusted: Array) -> Array:
     return _back(terms, rows, unadjusted, terms.record_days[rows], terms.record_unit[rows])
 
 
-def coupons_between(terms: Terms, rows: Array, first: np.datetime64, last: np.datetime64) -> Coupons:
+def coupons_between(terms: Terms, rows: Array, first: Any, last: Any) -> Coupons:
     """Coupons of the bonds at `rows` that are paid in [first, last] (payment dates), by row and date."""
     rows = np.asarray(rows)
     rows = rows[(terms.frequency[rows] > 0) & terms.sound[rows]]
@@ -263,7 +218,7 @@ def coupon_dates(terms: Terms, rows: Array, low: Array, high: Array) -> tuple[Ar
     owner = np.repeat(np.arange(len(rows)), count)
     within = np.arange(count.sum()) - np.repeat(np.cumsum(count) - count, count)
     k = np.repeat(k_high, count) - within
-    dates = _date(grid.month[owner] - k * grid.step[owner], grid.day[owner], grid.month_end[owner])
+    dates = day_of_month(grid.month[owner] - k * grid.step[owner], grid.day[owner], grid.month_end[owner])
     # maturity after a last regular coupon, and a first coupon that the grid does not know
     stub = np.flatnonzero((maturity > anchor) & (maturity >= low) & (maturity <= high))
     on_grid = grid.at(grid.number_at_or_before(first)) == first

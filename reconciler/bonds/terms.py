@@ -24,6 +24,7 @@ from reconciler.bonds import markets
 from reconciler.bonds.calendars import ADJUSTMENTS, Calendars
 from reconciler.bonds.dates import civil
 from reconciler.bonds.daycounts import NUMBERS
+from reconciler.bonds.grid import grid_after
 from reconciler.money import MISSING, known_currency, minor_digits
 
 Array = np.ndarray[Any, Any]
@@ -358,7 +359,6 @@ def _grouped(rows: tuple[Array, Array, Array], length: int) -> tuple[Array, Arra
 
 
 def _with_first_coupons(terms: Terms) -> Terms:
-    from reconciler.bonds.schedules import grid_after
 
     pays = (terms.frequency > 0) & ~np.isnat(terms.accrual_start) & ~np.isnat(terms.maturity)
     found = np.full(len(terms), NAT)
