@@ -29,6 +29,8 @@ def names(kind: str | pa.Array, parts: Sequence[Words | pa.Array], content: Cont
     made = pc.binary_join_element_wise(kind, *texts, " ", null_handling="skip")
     if isinstance(made, pa.ChunkedArray):
         made = made.combine_chunks()
+    if _different(parts):
+        return Words(np.arange(length, dtype=np.int32), made)
     coded = pc.dictionary_encode(made)
     if len(coded.dictionary) == length:
         return Words(np.arange(length, dtype=np.int32), made)
@@ -46,6 +48,14 @@ def names(kind: str | pa.Array, parts: Sequence[Words | pa.Array], content: Cont
     by_row = [suffixed[place] for place in np.argsort(rows).tolist()]
     made = pc.replace_with_mask(made, pa.array(mask), pa.array(by_row, pa.string()))
     return Words.from_arrow(made)
+
+
+def _different(parts: Sequence[Words | pa.Array]) -> bool:
+    """True if the first part, told in every row, is already a different text in each."""
+    first = parts[0]
+    if not isinstance(first, Words) or not len(first) or not first.known().all():
+        return False
+    return bool(np.bincount(first.codes).max() == 1)
 
 
 def dates(column: Array) -> pa.Array:

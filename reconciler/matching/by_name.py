@@ -51,8 +51,9 @@ def _count(rows: Array, size: int) -> Array:
 
 def _star(centre: Array, ray: Array, good: Array) -> Pairs:
     """(centre, ray) pairs of centres all of whose rays are good, in order of the centres."""
-    bad = np.unique(centre[~good])
-    keep = good & ~np.isin(centre, bad)
+    spoilt = np.zeros(int(centre.max(initial=-1)) + 1, np.bool_)
+    spoilt[centre[~good]] = True
+    keep = good & ~spoilt[centre]
     order = np.argsort(centre[keep], kind="stable")
     return centre[keep][order], ray[keep][order]
 

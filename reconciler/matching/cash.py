@@ -66,7 +66,7 @@ def pair_cash(
         pair_close(board)
         mark_repeats(board)
     payment, entry, share = board.taken()
-    order = np.lexsort((entry, payment))
+    order = np.argsort(payment * len(cash) + entry)
     again = np.flatnonzero(board.e_repeats >= 0)
     group, *proposed = propose(board) if len(items) and len(cash) else [np.zeros(0, np.int64)] * 4
     return CashPairs(
@@ -117,13 +117,10 @@ def _told_by_bank(length: int, cash: Table, allocations: Table) -> dict[str, Any
     if not len(item):
         return {"bank_minor": minor, "bank_date": date, "bank_entries": Words.blank(length)}
     value = cash["value_date"][entry]
-    count = np.bincount(item, minlength=length)
-    several = count[item] > 1
-    order = np.flatnonzero(several)
-    if len(order):
-        order = order[np.lexsort((content_order(cash, ("entry",))(entry[order]), value[order], item[order]))]
-    place = np.concatenate((np.flatnonzero(~several), order))
-    place = place[np.argsort(item[place], kind="stable")]
+    several = np.flatnonzero(np.bincount(item, minlength=length)[item] > 1)
+    rank = np.zeros(len(item), np.int64)
+    rank[several[np.lexsort((content_order(cash, ("entry",))(entry[several]), value[several]))]] = np.arange(len(several))
+    place = np.argsort(item * len(item) + rank)
     item, entry, share, value = item[place], entry[place], share[place], value[place]
     starts = np.flatnonzero(np.concatenate(([True], item[1:] != item[:-1])))
     rows = item[starts]
@@ -138,10 +135,11 @@ def _joined(length: int, rows: Array, starts: Array, names: Words) -> Words:
     """The entries' names of every item, joined by semicolons."""
     ends = pa.array(np.append(starts, len(names)), pa.int32())
     lists = pa.ListArray.from_arrays(ends, pc.fill_null(names.to_arrow(), ""))
-    joined = pc.binary_join(lists, ";")
+    # one entry may be named by several items
+    joined = Words.from_arrow(pc.binary_join(lists, ";"))
     codes = np.full(length, -1, np.int32)
-    codes[rows] = np.arange(len(rows), dtype=np.int32)
-    return Words(codes, joined)
+    codes[rows] = joined.codes
+    return Words(codes, joined.values)
 
 
 def _bank_items(cash: Table, rows: Array) -> Table:

@@ -80,7 +80,7 @@ def _with_bond(board: Board, amounts: Array, off: int) -> None:
     _take_ranked(board, payments, entries, left, right)
     payments, entries = _open(board, amounts)
     left, right = _keys(board, names, payments, entries, amounts[payments] + off)
-    keep_l, keep_r = np.isin(left, right), np.isin(right, left)
+    keep_l, keep_r = keys.occurs(left, right), keys.occurs(right, left)
     payments, entries, left, right = payments[keep_l], entries[keep_r], left[keep_l], right[keep_r]
     for late in _DAYS_OFF:
         if not len(payments) or not len(entries):

@@ -59,6 +59,33 @@ def same(left: Sequence[Array], right: Sequence[Array], pairs: Pairs) -> Pairs:
     return pairs if keep.all() else (pairs[0][keep], pairs[1][keep])
 
 
+def occurs(asked: Array, among: Array) -> Array:
+    """True for the numbers of `asked` that are among the others; the shorter side is sorted, the longer one looked up in it."""
+    if not len(asked) or not len(among):
+        return np.zeros(len(asked), np.bool_)
+    if len(among) <= len(asked):
+        ordered = np.sort(among)
+        place = np.minimum(np.searchsorted(ordered, asked), len(ordered) - 1)
+        return np.asarray(ordered[place] == asked)
+    order = np.argsort(asked)
+    ordered = asked[order]
+    first = np.searchsorted(ordered, among)
+    hit = ordered[np.minimum(first, len(ordered) - 1)] == among
+    found = np.zeros(len(asked), np.bool_)
+    found[first[hit]] = True
+    # the first of several equal numbers was marked: the others follow it
+    start = np.concatenate(([True], ordered[1:] != ordered[:-1]))
+    out = np.empty(len(asked), np.bool_)
+    out[order] = found[np.flatnonzero(start)[np.cumsum(start) - 1]]
+    return out
+
+
+def distinct(numbers: Array) -> Array:
+    """The different numbers in order."""
+    ordered = np.sort(numbers)
+    return ordered[np.concatenate(([True], ordered[1:] != ordered[:-1]))] if len(ordered) else ordered
+
+
 class Runs:
     """The rows of two sides in order of their keys; `starts` and `lengths` of the runs of equal keys, `left` how many of the left side."""
 
@@ -169,7 +196,7 @@ def greedy(pairs: Pairs, cost: Array, left_order: Order, right_order: Order) -> 
         both = np.intersect1d(first_l, first_r, assume_unique=True)
         chosen = rest[both]
         taken.append(chosen)
-        rest = rest[~np.isin(left[rest], left[chosen]) & ~np.isin(right[rest], right[chosen])]
+        rest = rest[~occurs(left[rest], left[chosen]) & ~occurs(right[rest], right[chosen])]
     return np.concatenate(taken)
 
 

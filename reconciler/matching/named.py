@@ -38,24 +38,25 @@ class Named:
 
 
 class _Dictionary:
-    """Rows by text: the rows of a column that hold each of its texts; with `folded`, capitals and small letters are the same."""
+    """Rows by text: the rows of a column that hold each of its texts."""
 
-    def __init__(self, words: Words, rows: Array, folded: bool = False) -> None:
+    def __init__(self, words: Words, rows: Array) -> None:
         self.words, self.all_rows = words, rows
-        if folded:
-            capital = pc.dictionary_encode(pc.utf8_upper(words.values))
-            place = np.append(capital.indices.to_numpy().astype(np.int32), np.int32(-1))
-            words = Words(place[words.codes], capital.dictionary)
         codes = words.codes[rows]
         rows, codes = rows[codes >= 0], codes[codes >= 0]
-        order = np.argsort(codes, kind="stable")
+        order = np.argsort((codes.astype(np.int64) << 32) + np.arange(len(codes)))
         self.rows = rows[order]
-        self.starts = np.searchsorted(codes[order], np.arange(len(words.values) + 1))
+        self.starts = np.concatenate(([0], np.cumsum(np.bincount(codes, minlength=len(words.values)))))
         self.values = words.values
 
     def folded(self) -> _Dictionary:
         """The same rows, found by texts in capitals."""
-        return _Dictionary(self.words, self.all_rows, folded=True)
+        capitals = pc.utf8_upper(self.words.values)
+        if capitals.equals(self.words.values):
+            return self
+        coded = pc.dictionary_encode(capitals)
+        place = np.append(coded.indices.to_numpy().astype(np.int32), np.int32(-1))
+        return _Dictionary(Words(place[self.words.codes], coded.dictionary), self.all_rows)
 
     def find(self, owners: Array, texts: Any) -> Pairs:
         """(owner, row) for every text that is known; texts that stand for too many rows say nothing."""
@@ -76,10 +77,12 @@ def name(board: Board, numbers: Words) -> Named:
     loud = waiting[~board.silent[waiting]]
     # A ticket told twice is paid only where the bank names its own number.
     dictionaries = [_Dictionary(numbers, waiting), _Dictionary(items["broker_reference"], loud)]
-    bonds = _Dictionary(items["bond"], np.unique(board.i_bond, return_index=True)[1])
+    example = np.full(len(items["bond"].values) + 1, -1)
+    example[board.i_bond] = np.arange(len(items))
+    bonds = _Dictionary(items["bond"], example[:-1][example[:-1] >= 0])
     rows = np.flatnonzero((cash["reference"].codes >= 0) & board.e_open)
     texts = cash["reference"].take(rows)
-    whole = _lookup(texts, np.arange(len(texts)), texts.values, [*dictionaries, bonds], rows)
+    whole = _lookup(texts, [*dictionaries, bonds], rows)
     anything = np.ones(len(items), np.bool_)
     wordy = [~_bare(numbers), ~_bare(items["broker_reference"])]
     told = [_sound(board, pairs, anything) for pairs in whole[:2]]
@@ -102,14 +105,16 @@ def name(board: Board, numbers: Words) -> Named:
     return Named(_distinct(told, len(items)), _bonds(board, named_bonds))
 
 
-def _lookup(texts: Words, places: Array, values: Any, into: Sequence[_Dictionary], rows: Array) -> list[Pairs]:
+def _lookup(texts: Words, into: Sequence[_Dictionary], rows: Array) -> list[Pairs]:
     """Pairs of cash rows and item rows for texts that are known whole."""
-    used, back = np.unique(texts.codes[places], return_inverse=True)
-    whole = values.take(pa.array(used))
     out = []
+    texts = texts.compact()
+    owners = np.arange(len(texts.values))
     for dictionary in into:
-        owner, found = dictionary.find(np.arange(len(used)), whole)
-        out.append(_per_row(owner, found, back.reshape(-1), rows))
+        owner, found = dictionary.find(owners, texts.values.take(pa.array(owners)))
+        out.append(_per_row(owner, found, texts.codes, rows))
+        # a reference that is one thing is not another
+        owners = owners[~keys.occurs(owners, owner)]
     return out
 
 
@@ -124,14 +129,13 @@ def _per_row(owner: Array, found: Array, text_of: Array, rows: Array) -> Pairs:
 
 def _in_words(texts: Words, into: Sequence[_Dictionary], rows: Array) -> list[Pairs]:
     """Pairs for the single words of texts; words joined by slashes and the like are taken apart as well."""
-    used, back = np.unique(texts.codes, return_inverse=True)
-    values = texts.values.take(pa.array(used))
-    owners, words = _words(values)
+    texts = texts.compact()
+    owners, words = _words(texts.values)
     out = []
     for dictionary in into:
         owner, found = dictionary.find(owners, words)
         order = np.argsort(owner, kind="stable")
-        out.append(_per_row(owner[order], found[order], back.reshape(-1), rows))
+        out.append(_per_row(owner[order], found[order], texts.codes, rows))
     return out
 
 
@@ -175,7 +179,7 @@ def _sound(board: Board, pairs: Pairs, trusted: Array) -> Pairs:
 
 
 def _distinct(parts: Sequence[Pairs], size: int) -> Pairs:
-    packed = np.unique(np.concatenate([entry * size + payment for entry, payment in parts]))
+    packed = keys.distinct(np.concatenate([entry * size + payment for entry, payment in parts]))
     return packed // max(size, 1), packed % max(size, 1)
 
 
@@ -184,7 +188,7 @@ def _bonds(board: Board, parts: Sequence[Pairs]) -> Pairs:
     entry = np.concatenate([pair[0] for pair in parts])
     code = board.i_bond[np.concatenate([pair[1] for pair in parts])]
     size = max(len(board.items["bond"].values), 1)
-    packed = np.unique(entry * size + code)
+    packed = keys.distinct(entry * size + code)
     entry, code = packed // size, packed % size
     count = np.bincount(entry, minlength=len(board.e_bond))
     single = (count[entry] == 1) & (board.e_bond[entry] < 0)

@@ -77,7 +77,7 @@ def _point(of: Array, key: Array, rows: Array, firsts: Array, order: keys.Order,
     """Lets each of `rows` point at the first (by content) of `firsts` with its key; `unlike` must not contradict where both told it."""
     if not len(rows) or not len(firsts):
         return
-    wanted = firsts[np.isin(key[firsts], key[rows])]
+    wanted = firsts[keys.occurs(key[firsts], key[rows])]
     wanted = wanted[np.lexsort((order(wanted), key[wanted]))]
     if not len(wanted):
         return

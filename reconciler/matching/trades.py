@@ -82,7 +82,7 @@ class _Pairing:
         paired = np.flatnonzero(told & (self.of_confirmation >= 0))
         if len(open_rows) and len(paired):
             self.given = self.given.copy()
-            self.given[open_rows[np.isin(key[open_rows], key[paired])]] = False
+            self.given[open_rows[keys.occurs(key[open_rows], key[paired])]] = False
 
     def take(self, pairs: Pairs) -> None:
         """Keeps the pairs (rows of the tables)."""
@@ -128,18 +128,19 @@ def _result(work: _Pairing, active: Array) -> TradePairs:
 def _by_reference(work: _Pairing, allowed: Array) -> None:
     """Our ticket number told by the broker, or the broker's number told by the desk with the same broker."""
     mine, theirs = work.open(allowed)
+    if not len(mine) or not len(theirs):
+        return
     ours = _told_alike(work.tickets["ticket"], work.confirmations["desk_reference"], mine, theirs)
     brokers = _told_alike(
         work.tickets["broker_reference"], work.confirmations["broker_reference"], mine, theirs,
         work.facts.desk["broker"], work.facts.broker["broker"],
     )  # fmt: skip
-    pairs = np.concatenate((ours[0], brokers[0])), np.concatenate((ours[1], brokers[1]))
-    if not len(pairs[0]):
+    if not len(ours[0]) + len(brokers[0]):
         return
     size = len(work.confirmations)
-    packed, place = np.unique(pairs[0] * size + pairs[1], return_inverse=True)
-    named = np.zeros(len(packed))
-    np.add.at(named, place.reshape(-1), np.repeat([1.5, 1.0], [len(ours[0]), len(brokers[0])]))
+    both = [a * size + b for a, b in (ours, brokers)]
+    packed = keys.distinct(np.concatenate(both))
+    named = sum(weight * keys.occurs(packed, part) for weight, part in zip((1.5, 1.0), both, strict=True))
     pairs = packed // size, packed % size
     agree = np.zeros(len(packed))
     for name, weight in _REFERENCE_WEIGHTS.items():
@@ -216,6 +217,8 @@ _MUST = "broker"
 
 def _with_differences(work: _Pairing, allowed: Array) -> None:
     """One or two facts differ or are untold, and no other row of either side fits as well; then by likeness."""
+    if not all(map(len, work.open(allowed))):
+        return
     work.set_repeats_aside()
     stages: list[tuple[str, ...]] = [tuple(n for n in (*DEALT, "amount") if n != off) for off in _ONE_OFF]
     stages += [tuple(n for n in DEALT if n != off) for off in _ONE_OFF]
@@ -274,7 +277,7 @@ def _by_likeness(work: _Pairing, allowed: Array) -> None:
     if not found:
         return
     size = max(len(work.confirmations), 1)
-    packed = np.unique(np.concatenate([a * size + b for a, b in found]))
+    packed = keys.distinct(np.concatenate([a * size + b for a, b in found]))
     pairs = packed // size, packed % size
     score = work.facts.likeness(pairs)
     apart = work.facts.apart("trade_date", pairs)

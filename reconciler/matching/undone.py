@@ -70,10 +70,16 @@ def shadows(board: Board) -> Array:
 
 def mark_repeats(board: Board) -> None:
     """Marks open entries that repeat one that pays."""
-    _, entry, _ = board.taken()
-    paying, free = np.unique(entry), np.flatnonzero(board.e_open)
+    free = np.flatnonzero(board.e_open)
+    if not len(free):
+        return
+    pays = np.zeros(len(board.e_open), np.bool_)
+    pays[board.taken()[1]] = True
+    paying = np.flatnonzero(pays)
     facts = (board.e_account, board.e_currency, board.e_amount, board.e_days)
     left, right = (keys.mixed(fact[rows] for fact in facts) for rows in (paying, free))
+    few = keys.occurs(left, right)
+    paying, left = paying[few], left[few]
     a, b = keys.candidates(left, right, most=4096)
     first, again = paying[a], free[b]
     for column in (board.e_reference, board.e_bond):
