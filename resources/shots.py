@@ -141,6 +141,7 @@ class Studio:
             page.show_tab(tab)
         elif hasattr(page, "show_tab"):
             page.show_tab("accounts")
+        page.focus_list()
         return self.window
 
     @staticmethod

@@ -34,7 +34,8 @@ from reconciler.settings import Settings
 from reconciler.texts import long_date
 
 Progress = Callable[[str, int, int], None]
-"""Told the step in words, how many steps are done and how many there are. May raise to stop the morning."""
+"""Told the step in words, how many steps are done and how many there are; while files are read, the rows of the file just read and 0.
+May raise to stop the morning."""
 
 
 class Stopped(BaseException):
@@ -76,6 +77,7 @@ class State:
     since: np.datetime64
     settings: Settings
     layouts: tuple[Path, ...] = ()
+    progress: Progress | None = None
     source: Any = None
     terms: Any = None
     term_problems: tuple[Problem, ...] = ()
@@ -91,14 +93,17 @@ class State:
 
 def read(state: State) -> State:
     """Reading the files"""
-    return replace(state, source=intake.read(state.folder, layouts_from=state.layouts))
+    tell = state.progress
+    seen = None if tell is None else lambda file, rows: tell(f"Reading {file}", rows, 0)
+    return replace(state, source=intake.read(state.folder, seen, state.layouts))
 
 
 def resolve(state: State) -> State:
     """Filling in the bonds' terms"""
     source = state.source
     terms, problems = resolve_terms(source.bonds, source.rates, source.factors, source.closings)
-    return replace(state, terms=terms, term_problems=tuple(problems))
+    # a bond whose rows were rejected stands without terms and without a line; what is wrong with it was told with the row
+    return replace(state, terms=terms, term_problems=tuple(problem for problem in problems if problem.line > 0))
 
 
 def pair_trades(state: State) -> State:
@@ -210,8 +215,9 @@ def _trades(state: State, bank_minor: Any = None, bank_date: Any = None) -> Tabl
 
 def _faults(state: State) -> Words:
     """What is wrong with each bond's terms, blank where nothing is: of several faults the first."""
-    reasons = [""] * len(state.source.bonds)
-    row_of = {line: row for row, line in enumerate(state.source.bonds["line"].tolist())}
+    lines = state.source.bonds["line"].tolist()
+    reasons = ["" if line > 0 else "its row in bonds.csv was rejected." for line in lines]
+    row_of = {line: row for row, line in enumerate(lines)}
     for problem in reversed(state.term_problems):
         if problem.line in row_of:
             named = f"{problem.column} '{problem.value}'" if problem.value else problem.column
@@ -236,7 +242,7 @@ def run(
     told = settings or Settings()
     today = np.datetime64(date, "D")
     first = np.datetime64(since, "D") if since is not None else np.busday_offset(today, -told["since_days"], roll="forward")
-    state = State(Path(folder), today, first, told, layouts)
+    state = State(Path(folder), today, first, told, layouts, progress)
     for number, step in enumerate(STEPS):
         if cancelled is not None and cancelled():
             raise Stopped
@@ -289,5 +295,6 @@ def summary_text(day: Day) -> str:
     kinds = Counter(day.breaks["break"].to_list())
     lines += [f"  {kinds[kind]:>7}  {kind}" for kind in BREAK_KINDS if kinds[kind]]
     read, used, rejected, aside = (int(day.source.totals[f"rows_{name}"].sum()) for name in ("read", "used", "rejected", "set_aside"))
-    lines.append(f"{read} rows read: {used} used, {rejected} rejected, {aside} set aside.")
+    why = " (rejects.csv says why)" if rejected else ""
+    lines.append(f"{read} rows read: {used} used, {rejected} rejected{why}, {aside} set aside.")
     return "\n".join(lines)

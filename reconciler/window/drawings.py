@@ -91,7 +91,7 @@ class CouponStrip(QWidget):
             painter.drawLine(QPointF(x, top - 6), QPointF(x, top + height + 6))
             text = figures.date(day)
             half = metrics.horizontalAdvance(text) / 2
-            if x - half > taken + 8:
+            if x - half > taken + 5:
                 painter.drawText(QPointF(x - half, top + height + 22), text)
                 taken = x + half
 

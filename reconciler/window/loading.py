@@ -46,8 +46,18 @@ def load(folder: Path, date: datetime.date, progress: Progress) -> Loaded:
 
     # asked for by the way, so that a cancelled load stops at the next step
     told = settings.of_user()
-    day = morning.run(folder, date, settings=told, progress=lambda step, done, every: progress(f"{step} · step {done + 1} of {every}", 0, 0),
-                      layouts=(settings.user_folder() / "layouts",))  # fmt: skip
+    rows = 0
+
+    def tell(step: str, done: int, every: int) -> None:
+        nonlocal rows
+        if every:
+            progress(f"{step}  ·  step {done + 1} of {every}", rows, 0)
+        else:
+            rows += done
+            progress(step, rows, 0)
+
+    layouts = (settings.user_folder() / "layouts",)
+    day = morning.run(folder, date, settings=told, progress=tell, layouts=layouts)
     progress("Looking ahead", 0, 0)
     return arrange(folder, day, ahead.ahead(day))
 
