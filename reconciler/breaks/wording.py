@@ -56,7 +56,7 @@ SENTENCES: dict[str, str] = {
 NEXT_STEPS: dict[str, str] = {
     "no confirmation": "Ask {broker} to confirm ticket {ticket}.",
     "no ticket": "Ask the desk whether it dealt; have the trade booked, or the confirmation cancelled.",
-    "no cash": "Ask the bank where the payment is; if it was not paid, claim it from {payer}.",
+    "no cash": "Ask the bank {chase} {payer}.",
     "unexplained cash": "Ask the bank what {entries} is for.",
     "unknown bond": "Add the bond's terms to bonds.csv.",
     "unsound terms": "Correct or complete the bond's terms.",
@@ -239,6 +239,13 @@ class _Fields:
     def Due(self) -> pa.Array:
         """The amount that was due, or that it is not known."""
         return _or(pc.binary_join_element_wise(self.expected, self.currency, " "), "A payment whose amount is not known")
+
+    @property
+    def chase(self) -> pa.Array:
+        """Money that did not come is claimed, money that did not go is offered."""
+        words = pa.array(["where the payment is; if it was not paid, claim it from", "why it was not paid, and settle it late with"])
+        owed = (self.found_rows.expected != MISSING) & (self.found_rows.expected < 0)
+        return words.take(pa.array(owed.astype(np.int64)))
 
     @property
     def payer(self) -> pa.Array:

@@ -49,7 +49,7 @@ CASES: list[tuple[One, str, str]] = [
     (One(desk=None), "Tamarisk & Vane confirms TV0 for 1,006,666.67 USD, settling 30 Mar 2026, and no ticket of ours books it.",
      "Ask the desk whether it dealt; have the trade booked, or the confirmation cancelled."),
     (One(bank=[]), "1,006,666.67 USD was due on 30 Mar 2026 and no bank entry pays it.",
-     "Ask the bank where the payment is; if it was not paid, claim it from Tamarisk & Vane."),
+     "Ask the bank why it was not paid, and settle it late with Tamarisk & Vane."),
     (coupon(bank=[]), "20,000.00 USD was due on 30 Mar 2026 and no bank entry pays it.",
      "Ask the bank where the payment is; if it was not paid, claim it from the paying agent."),
     (entry(amount_minor=-1234567), "Entry E0 of -12,345.67 USD in account Northquay main, value 30 Mar 2026, pays nothing that is "
