@@ -193,7 +193,7 @@ def resolve(
     _check_dates(columns, dates)
     rate = columns.whole("coupon_rate_e9")
     pays = frequency > 0
-    missing = pays & (day_count < 0)
+    missing = pays & (columns.text("day_count", "day_count")[0] < 0)
     if missing.any():
         columns.fault(np.flatnonzero(missing), "day_count", "is blank and the market does not say it; add the day count.")
     missing = (rate == MISSING) & np.isin(kind, (1, 4, 5)) & pays

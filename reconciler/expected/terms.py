@@ -43,6 +43,8 @@ def resolve_terms(bonds: Table, rates: Table, factors: Table, closings: Table) -
             "unsound-terms",
         )
         for row, column, value, reason in faults
+        # a bond without a line stands for rows that intake rejected, and said so
+        if bonds["line"][row] > 0
     ]
     return terms, problems
 

@@ -46,8 +46,8 @@ def build(seed: int, trades: int = 300, today: date = date(2026, 3, 31), planted
         if due.paid:
             bank.pay(due, number, rng)
     _plant_trades(world, rng, planted)
-    _net_trades(world.trades, rng)
     _twins(world, rng)
+    _net_trades(world.trades, rng)
     _plant_dues(world, rng, planted)
     _gather(world)
     if planted:
@@ -142,6 +142,7 @@ def _net_trades(trades: list[Trade], rng: random.Random) -> None:
 
 def _twins(world: World, rng: random.Random) -> None:
     """Trades dealt twice in earnest: every fact but the references is the same, and both are confirmed and paid."""
+    safe = safe_trades(world)
     plain = [
         t
         for t in world.trades
@@ -151,7 +152,7 @@ def _twins(world: World, rng: random.Random) -> None:
         and t.broker
         and not t.more_tickets
         and not t.more_confirmations
-        and safe_trades(world)(t)
+        and safe(t)
         and len(t.bank) <= 1
     ]
     for trade in rng.sample(plain, len(plain) // 40):

@@ -9,6 +9,8 @@ from datetime import timedelta
 from fractions import Fraction
 
 from tests.oracle import deals
+from tests.oracle.arithmetic import payment_date
+from tests.oracle.bank import payments
 from tests.oracle.deals import ACCOUNTS, Entry, Trade, Truth
 from tests.oracle.issues import Scene, row, text
 from tests.oracle.plants import desk_told_twice_reference
@@ -26,11 +28,13 @@ SPOILT_BONDS: dict[str, dict[str, str]] = {
 
 
 def safe_trades(world: World) -> Callable[[Trade], bool]:
-    """Trades on which no coupon or redemption of the window hangs, alone in their account, bond and currency on that
-    day.
-    """
-    hanging = {(due.account, due.bond.bond) for due in world.dues}
-    return lambda trade: (trade.true["account"], trade.true["bond"]) not in hanging
+    """Trades in bonds that pay nothing in the window: a fault in them changes nobody's coupon."""
+    paying = {
+        bond.bond
+        for bond in world.bonds
+        if any(world.since <= payment_date(bond, day) <= world.today for _, day, _ in payments(bond))
+    }
+    return lambda trade: trade.true["bond"] not in paying
 
 
 def odd_bonds(world: World, scene: Scene, rng: random.Random) -> None:
@@ -38,6 +42,8 @@ def odd_bonds(world: World, scene: Scene, rng: random.Random) -> None:
     spoils: list[tuple[str, dict[str, str] | None]] = [("unknown", None), ("two versions", {})]
     for name, spoilt in [*spoils, *SPOILT_BONDS.items()]:
         bond = scene.plain("EUR", "XECB", 1)
+        while any(world.since <= payment_date(bond, day) <= world.today for _, day, _ in payments(bond)):
+            bond = scene.plain("EUR", "XECB", 1)
         if name != "unknown":
             world.bond_rows.append({**row(bond), **(spoilt or {})})
         if name == "two versions":
@@ -139,7 +145,7 @@ def loose_entries(world: World, rng: random.Random) -> None:
             )
         )
         assert trade.broker
-        trade.broker["desk_reference"] = trade.true["ticket"]
+        trade.broker["desk_reference"], trade.broker["fees"] = trade.true["ticket"], trade.true["fees"]
         trade.truth.plant, trade.truth.must, trade.truth.state = "ticket unreadable", {("no ticket", "Desk")}, "break"
         trade.truth.key = (trade.true["broker"], trade.true["broker_reference"])
     unread = [

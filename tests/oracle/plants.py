@@ -267,7 +267,8 @@ def wrong_yield(trade: Trade, rng: random.Random) -> Must:
 
 
 def unconfirmed(trade: Trade, rng: random.Random) -> Must:
-    trade.broker = None
+    assert trade.desk
+    trade.broker, trade.desk["fees"] = None, trade.true["fees"]
     return {("no confirmation", "Broker")}
 
 
@@ -275,6 +276,8 @@ def without_ticket(trade: Trade, rng: random.Random) -> Must:
     if trade.bond.settlement_days is None:
         return None
     trade.desk = None
+    if trade.broker:
+        trade.broker["fees"] = trade.true["fees"]
     for entry in trade.bank:
         # nobody knows our ticket's number now, so the bank goes by the broker's reference
         entry.reference = trade.true["broker_reference"]
@@ -286,7 +289,7 @@ def without_ticket(trade: Trade, rng: random.Random) -> Must:
 def cancelled_but_confirmed(trade: Trade, rng: random.Random) -> Must:
     """Our ticket is cancelled; the broker confirms it all the same."""
     assert trade.desk and trade.broker
-    trade.desk["status"] = "cancelled"
+    trade.desk["status"], trade.broker["fees"] = "cancelled", trade.true["fees"]
     if rng.random() < 0.5:
         trade.more_tickets.append({**trade.desk, "status": "new"})
     trade.truth.key = (trade.true["broker"], trade.true["broker_reference"])
@@ -310,8 +313,8 @@ def rejected_confirmation(column: str, spoil: Callable[[str], str]) -> TradePlan
     """A confirmation whose row cannot be read leaves its ticket unconfirmed."""
 
     def plant(trade: Trade, rng: random.Random) -> Must:
-        assert trade.broker
-        trade.broker["spoilt"] = (column, spoil)
+        assert trade.broker and trade.desk
+        trade.broker["spoilt"], trade.desk["fees"] = (column, spoil), trade.true["fees"]
         return {("no confirmation", "Broker")}
 
     return plant
