@@ -161,11 +161,33 @@ def coupon_amounts(terms: Terms, rows: Array, unadjusted: Array, face_minor: Arr
 
     Amortising bonds pay on the factor at the period's start, linked bonds on the index ratio of the coupon date.
     """
-    rows = np.asarray(rows)
+    rows, dates = np.asarray(rows), np.asarray(unadjusted, "datetime64[D]")
+    face = np.broadcast_to(np.asarray(face_minor, np.int64), rows.shape)
+    plain = _plainly_regular(terms, rows, dates)
+    if not plain.any():
+        return _any_coupon(terms, rows, dates, face)
+    frequency = np.maximum(terms.frequency, 1)[rows]
+    minor = half_up([face, np.where(plain, terms.rate_e9[rows], 0)], [RATE, frequency])
+    odd = np.flatnonzero(~plain)
+    if len(odd):
+        minor[odd] = _any_coupon(terms, rows[odd], dates[odd], face[odd])
+    return minor
+
+
+def _plainly_regular(terms: Terms, rows: Array, dates: Array) -> Array:
+    """Where a coupon is rate / frequency at first sight: fixed rate, well past the first coupon, not past the last regular one."""
+    steps = (np.diff(terms.rate_offsets) > 0) | (np.diff(terms.factor_offsets) > 0)
+    simple = daycounts.EVEN[terms.day_count] & (terms.frequency > 0) & (terms.rate_e9 != MISSING) & ~steps & terms.sound
+    # more than a whole period after the first coupon, lest a first coupon off the grid broke the period
+    since = np.where(np.isnat(terms.first_coupon), np.datetime64("1800-01-01"), terms.first_coupon + 31 * (12 // np.maximum(terms.frequency, 1)))
+    return np.asarray(simple[rows] & (dates > since[rows]) & (dates <= terms.anchor[rows]))
+
+
+def _any_coupon(terms: Terms, rows: Array, unadjusted: Array, face_minor: Array) -> Array:
     periods = schedules.period_ending(terms, rows, unadjusted)
     above, below = coupon_fraction(terms, rows, periods)
     rate = _rates(terms, rows, _fixed_on(periods))
-    at = np.where(terms.kind[rows] == 4, np.asarray(unadjusted, "datetime64[D]"), periods.start)
+    at = np.where(terms.kind[rows] == 4, unadjusted, periods.start)
     factor = factors(terms, rows, at)
     known = terms.sound[rows] & (rate != MISSING) & ~np.isnat(periods.start)
     minor = half_up([face_minor, np.where(known, rate, 0), above], [RATE, np.where(below > 0, below, 1)])
