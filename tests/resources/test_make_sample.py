@@ -1,4 +1,6 @@
-"""The sample is made by its script, byte for byte, so that nobody mends it by hand and it can be made anew at any time."""
+"""The sample is made by its script, byte for byte, so that nobody mends it by hand and it can be made anew at any
+time.
+"""
 
 from __future__ import annotations
 
@@ -10,7 +12,9 @@ ROOT = Path(__file__).resolve().parent.parent.parent
 
 
 def _files(folder: Path) -> dict[str, bytes]:
-    return {path.relative_to(folder).as_posix(): path.read_bytes() for path in sorted(folder.rglob("*")) if path.is_file()}
+    return {
+        path.relative_to(folder).as_posix(): path.read_bytes() for path in sorted(folder.rglob("*")) if path.is_file()
+    }
 
 
 def test_the_script_makes_the_same_bytes_as_the_sample_in_the_checkout(tmp_path: Path) -> None:
