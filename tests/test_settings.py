@@ -16,7 +16,8 @@ from reconciler.problems import KnownError
 def test_every_option_passes_its_own_type_and_says_what_it_is(option: settings.Option) -> None:
     values = option.default.values() if option.kind.by_currency else [option.default]
     assert all(option.kind.fits(value) for value in values)
-    assert option.help.endswith(".") and len(option.help) > 20
+    assert option.help.endswith(".")
+    assert len(option.help) > 20
     if option.kind.by_currency:
         assert set(option.default) <= {settings.ALL} | {code for code in option.default if known_currency(code)}
 
@@ -34,7 +35,8 @@ def _written(tmp_path: Path, text: str) -> Path:
 
 def test_a_file_replaces_defaults_key_by_key(tmp_path: Path) -> None:
     told = settings.read(_written(tmp_path, "since_days = 5\n[tolerance]\nJPY = 0\n[interest]\nall = 4.25\nEUR = 2\n"))
-    assert told["since_days"] == 5 and told["ahead_days"] == settings.Settings()["ahead_days"]
+    assert told["since_days"] == 5
+    assert told["ahead_days"] == settings.Settings()["ahead_days"]
     assert told.tolerance_minor(["JPY", "USD"]).tolist() == [0, 1]
     assert told.interest_e9(["EUR", "USD"]).tolist() == [2_000_000_000, 4_250_000_000]
     assert told.interest_basis(["USD", "GBP"]).tolist() == [360, 365]
@@ -59,7 +61,8 @@ def test_a_file_replaces_defaults_key_by_key(tmp_path: Path) -> None:
 def test_a_wrong_key_is_named(tmp_path: Path, text: str, key: str, says: str) -> None:
     with pytest.raises(KnownError) as caught:
         settings.read(_written(tmp_path, text))
-    assert f"house.toml: '{key}' " in str(caught.value) and says in str(caught.value)
+    assert f"house.toml: '{key}' " in str(caught.value)
+    assert says in str(caught.value)
 
 
 def test_all_wrong_keys_are_told_together(tmp_path: Path) -> None:

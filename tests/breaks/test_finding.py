@@ -4,7 +4,6 @@ from __future__ import annotations
 
 from typing import Any
 
-import numpy as np
 import pytest
 
 from reconciler import settings
@@ -171,60 +170,6 @@ def test_a_negative_accrued_is_held_as_told() -> None:
         assert items["state"].to_list() == ["agrees"]
         _, breaks = found([One(broker={**told, "accrued_minor": 5000}, desk=told, terms=terms, bank=[{"amount_minor": -side * AMOUNT}])])
         assert (only(breaks)["expected"], only(breaks)["found"], only(breaks)["difference"]) == ("-50.00", "50.00", "100.00")
-
-
-def test_a_confirmation_told_twice_is_a_break_of_the_item_it_repeats() -> None:
-    morning = [One(), One(broker={}, desk=None, kind="trade", repeats=[("confirmation", 0)])]
-    from tests.breaks.hand import given
-
-    both = given(morning)
-    kept = both.items.take(np.array([0]))
-    from dataclasses import replace
-
-    from reconciler.breaks import finding
-
-    items, breaks = finding.find_breaks(replace(both, items=kept, allocations=both.allocations.take(np.array([0]))))
-    assert pairs(breaks) == [("told twice", "Broker")]
-    assert items["state"].to_list() == ["break"]
-    assert (only(breaks)["expected"], only(breaks)["found"]) == ("TV0", "TV1")
-    assert "TV1" in only(breaks)["explanation"]
-
-
-def test_a_ticket_told_twice_asks_for_nothing_more() -> None:
-    _, breaks = found([One(), One(broker=None, bank=[], repeats=[("ticket", 0)])])
-    assert pairs(breaks) == [("told twice", "Desk")]
-    assert only(breaks)["item"] == "trade 001"
-    assert (only(breaks)["expected"], only(breaks)["found"]) == ("T-0", "T-1")
-
-
-def test_an_entry_told_twice_is_not_called_unexplained() -> None:
-    _, breaks = found([coupon(), entry(repeats=[("entry", 0)]), entry(amount_minor=7)])
-    assert pairs(breaks) == [("told twice", "Bank"), ("unexplained cash", "Bank")]
-
-
-@pytest.mark.parametrize(
-    ("desk", "broker", "differs"),
-    [("4.25", "4.25", False), ("4.25", "4.26", True), ("4.25", "4.2537", False), ("4.25", "4.2601", True), ("4.25 %", "4.250", False),
-     ("4", "4.9", False), ("4.1", "", False), ("4.123456", "4.123457", True)],
-)  # fmt: skip
-def test_yields_differ_by_a_unit_of_the_coarser(desk: str, broker: str, differs: bool) -> None:
-    def told(text: str) -> dict[str, Any]:
-        number = text.rstrip(" %")
-        return {"yield_text": text, "yield_e12": round(float(number) * 10**12) if number else MISSING}
-
-    _, breaks = found([One(desk=told(desk), broker=told(broker))])
-    assert [kind for kind, _party in pairs(breaks)] == (["yield"] if differs else [])
-
-
-def test_the_yield_that_goes_with_the_price_is_right() -> None:
-    """4 % half-yearly at 99.5 with 5.2 years left yields 4.10655 % (QuantLib 1.44, BondFunctions, street): the other is wrong."""
-    right, wrong = {"yield_e12": 4_107 * 10**9, "yield_text": "4.107"}, {"yield_e12": 4_166 * 10**9, "yield_text": "4.166"}
-    _, breaks = found([One(desk=right, broker=wrong)])
-    assert pairs(breaks) == [("yield", "Broker")]
-    assert only(breaks)["expected"] == "4.107"
-    _, breaks = found([One(desk=wrong, broker=right)])
-    assert pairs(breaks) == [("yield", "Desk")]
-    assert (only(breaks)["expected"], only(breaks)["found"]) == ("4.107", "4.166")
 
 
 def test_nothing_gives_nothing() -> None:
