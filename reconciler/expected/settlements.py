@@ -152,10 +152,14 @@ def _fees(pairs: Pairs, desk: Array, broker: Array) -> Array:
     fees = np.where(desk == MISSING, broker, desk)
     repeats = pairs.repeats
     if len(repeats) and (fees == MISSING).any():
-        item_of = np.full(max(int(pairs.ticket_row.max(initial=-1)), int(repeats["of_row"].max())) + 1, -1)
-        item_of[pairs.ticket_row[pairs.ticket_row >= 0]] = np.flatnonzero(pairs.ticket_row >= 0)
         of_ticket = repeats["kind"].holds("ticket")
-        again, original = (item_of[repeats[name][of_ticket]] for name in ("row", "of_row"))
+        again, original = (repeats[name][of_ticket] for name in ("row", "of_row"))
+        item_of = np.full(max(int(column.max(initial=-1)) for column in (pairs.ticket_row, again, original)) + 2, -1)
+        item_of[pairs.ticket_row] = np.arange(len(pairs.ticket_row))
+        item_of[-1] = -1
+        again, original = item_of[again], item_of[original]
+        known = (again >= 0) & (original >= 0)
+        again, original = again[known], original[known]
         fees[again] = np.where(fees[again] == MISSING, fees[original], fees[again])
     return np.where(fees == MISSING, 0, fees)
 

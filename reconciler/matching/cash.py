@@ -23,10 +23,10 @@ from reconciler.matching.by_name import pair_named
 from reconciler.matching.closeness import pair_close
 from reconciler.matching.exact import pair_elsewhere, pair_exact, pair_wrong_way
 from reconciler.matching.groups import pair_groups, propose
-from reconciler.matching.keys import content_order
+from reconciler.matching.keys import content_order, spread, whole
 from reconciler.matching.named import name
 from reconciler.matching.undone import mark_repeats, pair_reversals
-from reconciler.records import ALLOCATIONS, ITEMS, MISSING, Table, Words, concat, table
+from reconciler.records import ALLOCATIONS, ITEMS, MISSING, Table, Words, concat, table, unify
 
 Array = np.ndarray[Any, Any]
 
@@ -53,7 +53,51 @@ def pair_cash(
     `repeats` names tickets told twice (kind "ticket"): their items are paid only where an entry names their own number. With
     `confirmations` a trade without a ticket is also known by the ticket number that its broker names.
     """
+    return _paired(Board(items, cash, _silent(items, repeats)), confirmations)
+
+
+def pair_again(
+    items: Table, cash: Table, before: Table, pairs: CashPairs, repeats: Table | None = None, confirmations: Table | None = None
+) -> CashPairs:
+    """Pairs cash anew after some payments were reckoned again: what was paired with payments that are as they were `before` stays.
+
+    Payments are the same when they have one name; the rest is as in `pair_cash`.
+    """
     board = Board(items, cash, _silent(items, repeats))
+    old, entry, share = (pairs.allocations[name] for name in ("item_row", "cash_row", "share_minor"))
+    row = _as_before(before, items)[old]
+    # Who shares an entry or a payment with something that changed is looked at again too.
+    loose_entry, loose_item = np.zeros(len(cash), np.bool_), np.zeros(len(before), np.bool_)
+    loose_entry[entry[row < 0]] = True
+    for _ in range(len(entry)):
+        loose_item[old[loose_entry[entry]]] = True
+        more = loose_item[old] & ~loose_entry[entry]
+        if not more.any():
+            break
+        loose_entry[entry[more]] = True
+    kept = ~loose_entry[entry]
+    board.take(row[kept], entry[kept], share[kept])
+    again, of = pairs.repeats["row"], pairs.repeats["of_row"]
+    board.repeat(again[~loose_entry[of]], of[~loose_entry[of]])
+    return _paired(board, confirmations)
+
+
+def _as_before(before: Table, items: Table) -> Array:
+    """The row of each former payment among the present ones if nothing that pairing looks at has changed, else -1."""
+    row_of = np.full(len(items["item"].values) + 1, -1, np.int64)
+    row_of[items["item"].codes] = np.arange(len(items))
+    row_of[-1] = -1
+    row = row_of[before["item"].codes_in(items["item"].values)]
+    same = row >= 0
+    for fact in ("terms_minor", "desk_minor", "broker_minor", "terms_date"):
+        own, now = whole(before[fact]), whole(items[fact])
+        same &= own == now[row] if len(now) else False
+    return np.where(same, row, -1)
+
+
+def _paired(board: Board, confirmations: Table | None) -> CashPairs:
+    """Every stage in turn."""
+    items, cash = board.items, board.cash
     if len(items) and len(cash):
         named = name(board, _numbers(items, confirmations))
         pair_named(board, named.payments)
@@ -133,13 +177,19 @@ def _told_by_bank(length: int, cash: Table, allocations: Table) -> dict[str, Any
 
 def _joined(length: int, rows: Array, starts: Array, names: Words) -> Words:
     """The entries' names of every item, joined by semicolons."""
-    ends = pa.array(np.append(starts, len(names)), pa.int32())
-    lists = pa.ListArray.from_arrays(ends, pc.fill_null(names.to_arrow(), ""))
-    # one entry may be named by several items
-    joined = Words.from_arrow(pc.binary_join(lists, ";"))
+    ends = np.append(starts[1:], len(names))
     codes = np.full(length, -1, np.int32)
-    codes[rows] = joined.codes
-    return Words(codes, joined.values)
+    codes[rows] = names.codes[starts]
+    single = Words(codes, names.values)
+    several = np.flatnonzero(ends - starts > 1)
+    if not len(several):
+        return single
+    _, place = spread(several, starts[several], ends[several])
+    sizes = ends[several] - starts[several]
+    lists = pa.ListArray.from_arrays(pa.array(np.append(0, np.cumsum(sizes)), pa.int32()), pc.fill_null(names.take(place).to_arrow(), ""))
+    one, joined = unify(single, Words.from_arrow(pc.binary_join(lists, ";")))
+    one.codes[rows[several]] = joined.codes
+    return one
 
 
 def _bank_items(cash: Table, rows: Array) -> Table:

@@ -38,11 +38,13 @@ class Named:
 
 
 class _Dictionary:
-    """Rows by text: the rows of a column that hold each of its texts."""
+    """Rows by text: `words` are the texts of the `rows`, one each."""
 
     def __init__(self, words: Words, rows: Array) -> None:
+        # Of a long vocabulary few texts may be left.
+        words = words.compact() if len(rows) * 4 < len(words.values) else words
         self.words, self.all_rows = words, rows
-        codes = words.codes[rows]
+        codes = words.codes
         rows, codes = rows[codes >= 0], codes[codes >= 0]
         order = np.argsort((codes.astype(np.int64) << 32) + np.arange(len(codes)))
         self.rows = rows[order]
@@ -73,13 +75,14 @@ class _Dictionary:
 def name(board: Board, numbers: Words) -> Named:
     """What every entry names; `numbers` are the payments' ticket numbers. Also gives entries that told no bond the one bond they name."""
     items, cash = board.items, board.cash
-    waiting = np.flatnonzero((board.i_kind > 0) & (board.i_expected != MISSING))
+    waiting = np.flatnonzero((board.i_open | board.silent) & (board.i_expected != MISSING))
     loud = waiting[~board.silent[waiting]]
     # A ticket told twice is paid only where the bank names its own number.
-    dictionaries = [_Dictionary(numbers, waiting), _Dictionary(items["broker_reference"], loud)]
+    dictionaries = [_Dictionary(numbers.take(waiting), waiting), _Dictionary(items["broker_reference"].take(loud), loud)]
     example = np.full(len(items["bond"].values) + 1, -1)
     example[board.i_bond] = np.arange(len(items))
-    bonds = _Dictionary(items["bond"], example[:-1][example[:-1] >= 0])
+    example = example[:-1][example[:-1] >= 0]
+    bonds = _Dictionary(items["bond"].take(example), example)
     rows = np.flatnonzero((cash["reference"].codes >= 0) & board.e_open)
     texts = cash["reference"].take(rows)
     whole = _lookup(texts, [*dictionaries, bonds], rows)

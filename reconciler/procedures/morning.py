@@ -144,7 +144,7 @@ def reckon_again(state: State) -> State:
         return state
     again = expect_payments(replace(state, trades=disputes.put_in(state.trades, rows, anew)))
     if not disputes.same(again.payments, state.payments):
-        return _with_cash(again, concat([again.trades, again.payments]))
+        return _with_cash(again, concat([again.trades, again.payments]), state)
     items = disputes.put_in(state.items, rows, anew)
     return replace(again, items=items, given=replace(state.given, items=items))
 
@@ -189,10 +189,17 @@ STEPS: tuple[Callable[[State], State], ...] = (
 )
 
 
-def _with_cash(state: State, payments: Table) -> State:
-    """The payments with what the bank paid, and everything the search for breaks looks at."""
+def _with_cash(state: State, payments: Table, before: State | None = None) -> State:
+    """The payments with what the bank paid, and everything the search for breaks looks at.
+
+    With `before`, cash stays paired with payments that are as they were.
+    """
     source, pairs = state.source, state.pairs
-    paid = cash_matching.pair_cash(payments, source.cash, pairs.repeats, source.confirmations)
+    if before is None:
+        paid = cash_matching.pair_cash(payments, source.cash, pairs.repeats, source.confirmations)
+    else:
+        was = concat([before.trades, before.payments])
+        paid = cash_matching.pair_again(payments, source.cash, was, before.paid, pairs.repeats, source.confirmations)
     items, allocations = cash_matching.with_bank(payments, source.cash, paid)
     given = Given(
         items, source.tickets, source.confirmations, source.cash, allocations, concat([pairs.repeats, paid.repeats]), state.terms,
