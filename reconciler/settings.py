@@ -90,7 +90,6 @@ OPTIONS: tuple[Option, ...] = (
     Option("reporting_rates", WORTH_BY_CURRENCY, {},
            "What one unit of a currency is worth in the reporting currency; shipped rates are rounded and from memory."),
     Option("since_days", WHOLE, 10, "How many business days back coupons and redemptions are expected when no first day is told."),
-    Option("match_date_window", WHOLE, 10, "How many days a bank entry may lie from a payment's date and still be paired by amount."),
     Option("ahead_days", WHOLE, 30, "How many calendar days ahead coming payments are shown."),
 )  # fmt: skip
 

@@ -38,7 +38,8 @@ def run(arguments: argparse.Namespace) -> int:
     if arguments.since is not None and arguments.since > arguments.date:
         raise KnownError(f"--since {arguments.since} lies after --date {arguments.date}; exchange them.")
     told = settings.read(arguments.settings) if arguments.settings is not None else settings.Settings()
-    day = morning.run(arguments.folder, arguments.date, arguments.since, told)
+    own_layouts = (settings.user_folder() / "layouts",)
+    day = morning.run(arguments.folder, arguments.date, arguments.since, told, layouts=own_layouts)
     command.tell(day.problems)
     morning.write(day, arguments.out)
     print(morning.summary_text(day))

@@ -15,8 +15,6 @@ import numpy as np
 from reconciler.procedures.overview import digits_of
 from reconciler.records import ITEM_KINDS, MISSING, Table, Words, concat
 
-DAYS_AHEAD = 30
-
 AHEAD: dict[str, str] = {
     # one expected payment a row; amount_minor signed from our cash account's side
     "date": "date", "kind": "text", "account": "text", "bond": "text", "bond_row": "int32", "currency": "text", "side": "int8",
@@ -46,12 +44,12 @@ class Ahead:
     until: np.datetime64
 
 
-def ahead(day: Any, days: int = DAYS_AHEAD) -> Ahead:
-    """The payments of the `days` after a morning (procedures.morning.Day)."""
+def ahead(day: Any, days: int | None = None) -> Ahead:
+    """The payments of the `days` (default: what the settings say) after a morning (procedures.morning.Day)."""
     from reconciler.expected.coupons import expect_coupons
 
     date = np.datetime64(day.date, "D")
-    until = date + np.timedelta64(days, "D")
+    until = date + np.timedelta64(day.settings["ahead_days"] if days is None else days, "D")
     source = day.source
     trades = day.items.take(_kind(day.items) == ITEM_KINDS.index("trade"))
     coming = expect_coupons(day.terms, source.bonds, source.holdings, trades, date + np.timedelta64(1, "D"), until)
