@@ -14,7 +14,6 @@ from typing import Any
 
 import numpy as np
 import pyarrow as pa
-import pyarrow.compute as pc
 
 from reconciler.bonds.terms import Terms
 from reconciler.money import minor_digits
@@ -68,12 +67,12 @@ class Given:
     @functools.cached_property
     def trade(self) -> Array:
         """True for items that are trades."""
-        return is_word(self.items["kind"], "trade")
+        return np.asarray(self.items["kind"].holds("trade"))
 
     @functools.cached_property
     def bank_only(self) -> Array:
         """True for bank entries that nothing explains."""
-        return is_word(self.items["kind"], "bank")
+        return np.asarray(self.items["kind"].holds("bank"))
 
     @functools.cached_property
     def digits(self) -> Array:
@@ -143,24 +142,18 @@ class Given:
     @functools.cached_property
     def repeated_entries(self) -> tuple[Array, Array]:
         """Bank items whose entry repeats another one, and that other entry's row."""
-        chosen = is_word(self.repeats["kind"], "entry")
+        chosen = self.repeats["kind"].holds("entry")
         at = self.entry_items[self.repeats["row"][chosen]]
         return at[at >= 0], self.repeats["of_row"][chosen][at >= 0]
 
     def _repeats(self, kind: str, own: Array, length: int, by_row: bool) -> tuple[Array, Array]:
-        chosen = is_word(self.repeats["kind"], kind)
+        chosen = self.repeats["kind"].holds(kind)
         row, of_row = self.repeats["row"][chosen], self.repeats["of_row"][chosen]
         item_of = np.full(length, -1, np.int64)
         known = own >= 0
         item_of[own[known]] = np.flatnonzero(known)
         at = item_of[row if by_row else of_row]
         return at[at >= 0], (of_row if by_row else row)[at >= 0]
-
-
-def is_word(column: Words, word: str) -> Array:
-    """True where the row holds this word."""
-    code = pc.index(column.values, word).as_py() if len(column.values) else -1
-    return np.asarray(column.codes == code) if code >= 0 else np.zeros(len(column), np.bool_)
 
 
 def differs(one: Words, other: Words) -> Array:

@@ -19,7 +19,7 @@ import pyarrow as pa
 import pyarrow.compute as pc
 
 from reconciler.bonds import accrual, pricing, settlement
-from reconciler.breaks.given import Given, is_word, per_word
+from reconciler.breaks.given import Given, per_word
 from reconciler.money import half_up
 from reconciler.records import BREAK_KINDS, MISSING, Table, Words
 
@@ -85,7 +85,7 @@ def _cash_in_dispute(given: Given, breaks: Table, kind: Array, amount: Array) ->
 def _told_apart(given: Given, breaks: Table, rows: Array) -> Array:
     """By how much the party's own amount is off, where face, price or side are in dispute."""
     items, item = given.items, breaks["item_row"][rows]
-    by_broker = is_word(breaks["party"], "Broker")[rows]
+    by_broker = breaks["party"].holds("Broker")[rows]
     told = np.where(by_broker, items["broker_minor"][item], items["desk_minor"][item])
     expected = given.expected_minor[item]
     known = (told != MISSING) & (expected != MISSING)
