@@ -151,7 +151,7 @@ def _dirty_as_clean(r: Reading, rng: random.Random) -> bool:
     amount = r.facts["accrued"]
 
     def twice(facts: dict[str, Any]) -> None:
-        facts["settlement"] += amount
+        facts["settlement"] += facts["accrued"]
 
     r.slips.append(twice)
     return bool(amount > 0)
@@ -217,7 +217,7 @@ def _without_accrued(r: Reading, rng: random.Random) -> bool:
     amount = r.facts["accrued"]
 
     def less(facts: dict[str, Any]) -> None:
-        facts["settlement"] -= amount
+        facts["settlement"] -= facts["accrued"]
 
     r.slips.append(less)
     return abs(amount) > 100

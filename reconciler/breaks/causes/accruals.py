@@ -47,25 +47,35 @@ NO_CAP = Cause("cap at the coupon ignored", "day count", "Accrued never exceeds 
 SIGN = Cause("sign of the accrued lost", "sign", "In the ex-dividend period accrued is negative.", 0.6)
 
 
-def _terms(**columns: Callable[[Facts], Any]) -> Make:
-    return lambda facts: accrue(facts.with_terms(**{name: make(facts) for name, make in columns.items()}))
+class _Changed:
+    """Interest under changed facts; `change` is the change alone, so that another cause can be put on top of it."""
+
+    def __init__(self, change: Callable[[Facts], Facts]) -> None:
+        self.change = change
+
+    def __call__(self, facts: Facts) -> Interest:
+        return accrue(self.change(facts))
 
 
-def _day_count(number: int) -> Make:
+def _terms(**columns: Callable[[Facts], Any]) -> _Changed:
+    return _Changed(lambda facts: facts.with_terms(**{name: make(facts) for name, make in columns.items()}))
+
+
+def _day_count(number: int) -> _Changed:
     return _terms(day_count=lambda f: np.full(len(f.terms), number, np.int8))
 
 
-def _shifted(days: int) -> Make:
-    return lambda facts: accrue(facts.changed(date=facts.date + days))
+def _shifted(days: int) -> _Changed:
+    return _Changed(lambda facts: facts.changed(date=facts.date + days))
 
 
-def _to_trade_date(facts: Facts) -> Interest:
-    traded = np.where(np.isnat(facts.trade_date), facts.date, facts.trade_date)
-    return accrue(facts.changed(date=traded))
+def _traded(facts: Facts) -> Facts:
+    return facts.changed(date=np.where(np.isnat(facts.trade_date), facts.date, facts.trade_date))
 
 
-def _from_start(facts: Facts) -> Interest:
-    return accrue(facts.with_terms(first_coupon=np.where(np.isnat(facts.terms.accrual_start), facts.terms.first_coupon, facts.terms.maturity)))
+def _from_start(facts: Facts) -> Facts:
+    terms = facts.terms
+    return facts.with_terms(first_coupon=np.where(np.isnat(terms.accrual_start), terms.first_coupon, terms.maturity))
 
 
 def _whole_coupon(facts: Facts, sign: int) -> Interest:
@@ -108,6 +118,44 @@ def _is_ex(facts: Facts) -> Array:
 
 def _has_ex_rule(facts: Facts) -> Array:
     return np.asarray((facts.terms.ex_days[facts.bond_row] != MISSING) & ~_is_ex(facts))
+
+
+def _with_last_coupon(facts: Facts) -> Interest:
+    """Interest with the coupon of the period before still in it."""
+    minor, days = accrue(facts)
+    t = np.flatnonzero(facts.kind == TRADE)
+    rows = facts.bond_row[t]
+    periods = schedules.periods_at(facts.terms, rows, facts.date[t])
+    begin = facts.terms.accrual_start[rows]
+    some = np.flatnonzero(~np.isnat(periods.start) & (np.isnat(begin) | (periods.start > begin)))
+    if not len(some):
+        return minor, days
+    minor, days = minor.copy(), days.copy()
+    at, bonds, start = t[some], rows[some], periods.start[some]
+    before = schedules.period_ending(facts.terms, bonds, start)
+    coupon = accrual.coupon_amounts(facts.terms, bonds, start, facts.face[at])
+    known = (coupon != MISSING) & (minor[at] != MISSING)
+    minor[at] = np.where(known, minor[at] + coupon, minor[at])
+    days[at] = np.where(known, days[at] + (before.accrual_end - before.accrual_start).astype(np.int64), days[at])
+    return minor, days
+
+
+def _flat(times: int) -> Make:
+    """A coupon of rate over so many payments a year (0: the bond's own), whatever the length of its period."""
+
+    def make(facts: Facts) -> Interest:
+        minor, days = accrue(facts)
+        c = np.flatnonzero(facts.kind == COUPON)
+        rows = facts.bond_row[c]
+        periods = schedules.period_ending(facts.terms, rows, facts.coupon_date[c])
+        start = np.where(np.isnat(periods.start), facts.coupon_date[c], periods.start)
+        found = accrual.accrued(facts.terms, rows, start, facts.face[c])
+        frequency = np.maximum(facts.terms.frequency[rows], 1) if times == 0 else np.full(len(c), times)
+        minor = minor.copy()
+        minor[c] = np.where(found.sound, half_up([facts.face[c], found.rate_e9, found.factor_e12], [RATE, frequency, ONE]), minor[c])
+        return minor, days
+
+    return make
 
 
 def _negative(facts: Facts) -> Interest:
@@ -218,10 +266,13 @@ def _frequency(times: int) -> Make:
 
 _BOTH = (TRADE, COUPON)
 
+WHOLE_COUPONS = (NOT_RESET, EX_MISSED, EX_WRONG, DEDUCTED)
+"""Causes that put a whole coupon on or take it off."""
+
 ACCRUALS: tuple[Variant, ...] = (
     *(
         Variant(DAY_COUNT, "accrual", f"the days are counted {entry.name}", _day_count(number), _BOTH,
-                1.0 if entry.name in ("30/360", "Act/360", "Act/365F", "Act/Act ICMA") else 0.5)
+                1.0 if entry.name in ("30/360", "Act/360", "Act/365F", "Act/Act ICMA") else 0.6 if entry.name == "30E/360" else 0.4)
         for number, entry in enumerate(daycounts.DAY_COUNTS)
     ),
     Variant(ONE_DAY, "accrual", "one day of interest is left out", _shifted(-1)),
@@ -230,12 +281,14 @@ ACCRUALS: tuple[Variant, ...] = (
     Variant(ONE_DAY, "accrual", "two days of interest too many are counted", _shifted(2), scale=0.3),
     Variant(ONE_DAY, "accrual", "three days of interest are left out", _shifted(-3), scale=0.3),
     Variant(ONE_DAY, "accrual", "three days of interest too many are counted", _shifted(3), scale=0.3),
-    Variant(TO_TRADE, "accrual", "interest is counted to the trade date", _to_trade_date),
-    Variant(FROM_START, "accrual", "interest is counted from the start of accrual at issue", _from_start),
+    Variant(TO_TRADE, "accrual", "interest is counted to the trade date", _Changed(_traded)),
+    Variant(FROM_START, "accrual", "interest is counted from the start of accrual at issue", _Changed(_from_start)),
     Variant(EX_MISSED, "accrual", "the whole coupon is still counted in, as if there were no ex-dividend date",
-            _only(lambda f: _whole_coupon(f, 1), _is_ex)),
-    Variant(NOT_RESET, "accrual", "a whole coupon more is counted, as if the last one had not been paid",
-            _only(lambda f: _whole_coupon(f, 1), lambda f: ~_is_ex(f))),
+            _terms(ex_days=lambda f: np.full(len(f.terms), MISSING))),
+    Variant(EX_MISSED, "accrual", "the whole coupon is still counted in, put on after rounding",
+            _only(lambda f: _whole_coupon(f, 1), _is_ex), scale=0.5),
+    Variant(NOT_RESET, "accrual", "the last coupon is still counted in, as if it had not been paid",
+            _only(_with_last_coupon, lambda f: ~_is_ex(f))),
     Variant(EX_WRONG, "accrual", "the whole coupon is taken off, as in the ex-dividend period",
             _only(lambda f: _whole_coupon(f, -1), _has_ex_rule)),
     Variant(DEDUCTED, "accrual", "the coming coupon is taken off, as between record and payment date",
@@ -244,6 +297,8 @@ ACCRUALS: tuple[Variant, ...] = (
     Variant(ADJUSTED, "accrual", "the period's dates are adjusted (or left unadjusted) against the terms",
             _terms(accrual_adjusted=lambda f: ~f.terms.accrual_adjusted), _BOTH),
     Variant(STUB, "accrual", "the odd period is taken for a regular one", _regular, _BOTH),
+    Variant(STUB, "accrual", "the odd coupon is paid as a regular one", _flat(0), (COUPON,)),
+    *(Variant(FREQUENCY, "accrual", f"the coupon of {n} payments a year is paid", _flat(n), (COUPON,)) for n in (1, 2, 4, 12)),
     Variant(MONTH_END, "accrual", "the end-of-month rule is applied the other way", _month_end, _BOTH),
     *(Variant(FREQUENCY, "accrual", f"{n} payments a year are assumed", _frequency(n), _BOTH) for n in (1, 2, 4, 12)),
     Variant(OLD_RATE, "accrual", "the rate of the period before is used", _other_rate(-1), _BOTH),

@@ -51,7 +51,12 @@ def explanations(cases: Cases, terms: Terms, right: Array, told: Array) -> Itera
         yield YEAR, "the year is another", _year(right, years)
     for days in range(1, 11):
         yield LATE, f"it is {days} business day{'s' * (days > 1)} late", terms.calendars.add(terms.payment_calendar[rows], right, np.full(len(rows), days))
+        yield LATE, f"it is valued {days} day{'s' * (days > 1)} later, on a closed day", _closed(terms, cases, right + days)
         yield EARLY, f"it is {days} business day{'s' * (days > 1)} early", terms.calendars.add(terms.payment_calendar[rows], right, np.full(len(rows), -days))
+
+
+def _closed(terms: Terms, cases: Cases, days: Array) -> Array:
+    return np.where(terms.calendars.is_open(terms.payment_calendar[cases.bond_row], days), NAT, days)
 
 
 def _swapped(dates: Array) -> Array:

@@ -7,7 +7,7 @@ too, because a fit means little without it (judging).
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterator
+from collections.abc import Iterator
 from dataclasses import dataclass, field
 from typing import Any
 
@@ -16,7 +16,7 @@ import numpy as np
 from reconciler.bonds.daycounts import NUMBERS
 from reconciler.bonds.terms import Terms
 from reconciler.breaks.causes import reckoning, slips
-from reconciler.breaks.causes.accruals import ACCRUALS, DAY_COUNT, ONE_DAY, TO_TRADE
+from reconciler.breaks.causes.accruals import ACCRUALS, DAY_COUNT, FROM_START, ONE_DAY, TO_TRADE, WHOLE_COUPONS
 from reconciler.breaks.causes.cases import BANK, TRADE, Cases
 from reconciler.breaks.causes.judging import LOOSE, accidental
 from reconciler.breaks.causes.readings import READINGS
@@ -307,11 +307,15 @@ def _pairs(search: Search, done: list[tuple[Variant, Payment]], chance: Array) -
     by_part: dict[str, list[tuple[Variant, Payment]]] = {}
     for variant, payment in few:
         by_part.setdefault(variant.part, []).append((variant, payment))
-    _dated_day_counts(part)
+    _two_accruals(part)
     _two_parts(part, by_part)
     _with_wholes(part, few)
     _faces(part, by_part.get("face", []))
+    before = len(part.fits.case)
+    _slips_on_top(part, few)
+    unproven = np.unique(np.concatenate(part.fits.case[before:])) if len(part.fits.case) > before else np.zeros(0, np.int64)
     _join(search, part, rest, chance)
+    chance[rest[unproven]] = 1.0
 
 
 def _two_parts(part: Search, by_part: dict[str, list[tuple[Variant, Payment]]]) -> None:
@@ -347,43 +351,74 @@ def _with_wholes(part: Search, few: list[tuple[Variant, Payment]]) -> None:
 
 def _faces(part: Search, faces: list[tuple[Variant, Payment]]) -> None:
     """A wrong face together with a wrong accrual or price."""
+    factors = {variant.wording: changed for variant, changed in _factors(part.facts)}
     for one, payment in faces:
-        if one.cause in (UNSCALED, OLD_FACTOR):
-            continue
         usable = payment.amount != MISSING
-        facts = part.facts.changed(face=np.where(usable, payment.face, 0))
+        facts = factors.get(one.wording) or part.facts.changed(face=np.where(usable, payment.face, 0))
         for two in ACCRUALS:
             made = reckoning.pay(facts, payment.principal, two.make(facts))  # type: ignore[arg-type]
             part.try_out((one, two), made, usable & part.kinds(one, two) & (made.accrued != payment.accrued))
 
 
-def _dated_day_counts(part: Search) -> None:
-    """A wrong end of the accrual together with another day count."""
-    for dated in ACCRUALS:
-        if dated.cause not in (ONE_DAY, TO_TRADE):
+def _two_accruals(part: Search) -> None:
+    """Two faults in the accrual, where the party told its accrued: the days, and what was made of them."""
+    base = part.base
+    asked = np.flatnonzero(~part.silent["accrued"] & (part.told["accrued"] != base.accrued) & part.open)
+    if not len(asked):
+        return
+    small = Search(part.cases.take(asked), part.facts.terms)
+    alone = {variant: reckoning.pay(small.facts, small.base.principal, variant.make(small.facts)) for variant in ACCRUALS}  # type: ignore[arg-type]
+    for first in ACCRUALS:
+        if first.cause in (DAY_COUNT, ONE_DAY, TO_TRADE, FROM_START) and _differs(alone[first], small.base).any():
+            _on_top(small, first, alone)
+    _join(part, small, asked, None)
+
+
+def _on_top(small: Search, first: Variant, alone: dict[Variant, Payment]) -> None:
+    change = first.make.change  # type: ignore[attr-defined]
+    base, facts = small.base, change(small.facts)
+    one = alone[first]
+    for second in ACCRUALS:
+        if second.cause is first.cause or second.cause in (TO_TRADE, ONE_DAY):
             continue
-        for counted in ACCRUALS:
-            if counted.cause is not DAY_COUNT:
-                continue
-            make: Callable[[Facts], tuple[Array, Array]] = counted.make  # type: ignore[assignment]
-            date = part.facts.trade_date if dated.cause is TO_TRADE else None
-            shift = _shift_of(dated)
-            moved = part.facts.changed(date=part.facts.date + shift if date is None else np.where(np.isnat(date), part.facts.date, date))
-            made = reckoning.pay(part.facts, part.base.principal, make(moved))
-            part.try_out((dated, counted), made, part.kinds(dated, counted) & _differs(made, part.base))
+        if second.cause in WHOLE_COUPONS:
+            two = alone[second]
+            accrued = one.accrued + two.accrued - base.accrued
+            days = one.accrued_days + two.accrued_days - base.accrued_days
+            made = one.changed(accrued=accrued, accrued_days=days, amount=one.amount + two.amount - base.amount)
+            applies = (one.amount != MISSING) & (two.amount != MISSING) & _differs(two, base)
+        else:
+            minor, days = second.make(facts)  # type: ignore[misc]
+            made = reckoning.pay(small.facts, base.principal, (minor, days))
+            applies = _differs(made, one)
+        small.try_out((first, second), made, small.kinds(first, second) & applies & _differs(one, base))
 
 
-def _shift_of(dated: Variant) -> int:
-    words = {"one": 1, "two": 2, "three": 3}
-    days = words.get(dated.wording.split()[0], 0)
-    return -days if "left out" in dated.wording else days
+def _slips_on_top(part: Search, few: list[tuple[Variant, Payment]]) -> None:
+    """A slip of the pen in the amount on top of a cause; so many figures fit that this is never proof."""
+    told = part.told["amount"]
+    for one, payment in few:
+        fits = _differs(payment, part.base) & part.kinds(one) & part.open & (payment.amount != MISSING)
+        rows = np.flatnonzero(fits)
+        rows = rows[part.consistent(payment, rows)]
+        if not len(rows):
+            continue
+        which = slips.which(payment.amount[rows], told[rows])
+        for number, slip in enumerate(slips.SLIPS):
+            hit = rows[which == number]
+            if len(hit):
+                variant = Variant(SLIP_CAUSES[slip.name], "whole", f"{slip.wording} in the amount", lambda p: p, (0, 1, 2))
+                part.fits.case.append(hit)
+                part.fits.number.append(np.full(len(hit), len(part.fits.hypotheses)))
+                part.fits.hypotheses.append((one, variant))
+        part.fits.tried += 1
 
 
 def _rows(payment: Payment, rows: Array) -> Payment:
     return Payment(**{name: column[rows] for name, column in vars(payment).items()})
 
 
-def _join(search: Search, part: Search, rest: Array, chance: Array) -> None:
+def _join(search: Search, part: Search, rest: Array, chance: Array | None) -> None:
     """What the pairs explained, put among the rest."""
     offset = len(search.fits.hypotheses)
     search.fits.hypotheses += part.fits.hypotheses
@@ -391,7 +426,25 @@ def _join(search: Search, part: Search, rest: Array, chance: Array) -> None:
     search.fits.number += [number + offset for number in part.fits.number]
     search.fits.tried += part.fits.tried
     explained = _explained(part)
-    if len(explained):
+    if chance is None:
+        # tries on some of the cases only: elsewhere they gave nothing
+        search.tried += [(_spread(p, rest, len(search.cases)), *_spread_two(amount, applies, rest, len(search.cases))) for p, amount, applies in part.tried]
+    elif len(explained):
         before = [(_rows(payment, rest), amount[rest], applies[rest]) for payment, amount, applies in search.tried]
         part.tried = before + part.tried
         chance[rest[explained]] = part.chances(explained)
+
+
+def _spread(payment: Payment, rows: Array, length: int) -> Payment:
+    out = {}
+    for name, column in vars(payment).items():
+        whole = np.zeros(length, column.dtype)
+        whole[rows] = column
+        out[name] = whole
+    return Payment(**out)
+
+
+def _spread_two(amount: Array, applies: Array, rows: Array, length: int) -> tuple[Array, Array]:
+    whole, where = np.full(length, MISSING), np.zeros(length, np.bool_)
+    whole[rows], where[rows] = amount, applies
+    return whole, where
