@@ -58,8 +58,10 @@ def _with_bond(board: Board) -> None:
     payment, entry = payments[a], entries[b]
     days, far = board.days_late(payment, entry), _proportion(board, payment, entry)
     spoken = (board.e_kind[entry] & board.i_kind[payment]) > 0
-    sure = spoken | (days == 0)
-    keep = (days >= -EARLY) & (days <= LATE) & board.kinds_agree(payment, entry) & (far <= np.where(sure, _FAR_IF_SURE, _FAR))
+    on_its_day = days == 0
+    # A digit lost in front makes any proportion; kind and day together then say enough, if nothing else comes near.
+    limit = np.where(spoken & on_its_day, np.inf, np.where(spoken | on_its_day, _FAR_IF_SURE, _FAR))
+    keep = (days >= -EARLY) & (days <= LATE) & board.kinds_agree(payment, entry) & np.isfinite(far) & (far <= limit)
     payment, entry, cost = payment[keep], entry[keep], (far + _PER_DAY * np.abs(days.astype(float)) - 0.2 * spoken)[keep]
     _take_clear(board, payment, entry, cost)
 

@@ -42,13 +42,14 @@ def pair_elsewhere(board: Board) -> None:
 
 
 def pair_wrong_way(board: Board) -> None:
-    """Entries with the bond and the very amount, booked the wrong way round."""
+    """Entries with the bond, the day and the very amount, booked the wrong way round."""
     for amounts in board.i_amounts:
         payments, entries = _open(board, amounts)
         entries = entries[~board.e_undoes[entries]]
         left, right = _keys(board, ("account", "currency", "bond"), payments, entries, -amounts[payments])
         a, b = keys.only_pairs(left, right)
-        _take_near(board, payments[a], entries[b], 3, 10)
+        calm = ~_busy(board, payments, entries, a, b)
+        _take_near(board, payments[a][calm], entries[b][calm], 0, 0)
 
 
 def _open(board: Board, amounts: Array, with_bond: bool = True) -> tuple[Array, Array]:
@@ -128,10 +129,14 @@ def _elsewhere(board: Board, amounts: Array) -> None:
         payments, entries = _open(board, amounts)
         left, right = _keys(board, names, payments, entries, amounts[payments])
         a, b = keys.only_pairs(left, right)
-        # At either account something else that might be meant: same bond, direction and days.
-        busy = np.isin(entries[b], _rivals(board, payments, entries[b])[1]) | np.isin(payments[a], _rivals(board, payments[a], entries)[0])
-        good = board.kinds_agree(payments[a], entries[b]) & ~busy
+        good = board.kinds_agree(payments[a], entries[b]) & ~_busy(board, payments, entries, a, b)
         _take_near(board, payments[a][good], entries[b][good], 5, 10)
+
+
+def _busy(board: Board, payments: Array, entries: Array, a: Array, b: Array) -> Array:
+    """True for pairs (places a and b) where something else might be meant for either: of the same bond, direction and days."""
+    theirs, mine = _rivals(board, payments, entries[b])[1], _rivals(board, payments[a], entries)[0]
+    return np.asarray(keys.occurs(entries[b], theirs) | keys.occurs(payments[a], mine))
 
 
 def _rivals(board: Board, payments: Array, entries: Array) -> tuple[Array, Array]:

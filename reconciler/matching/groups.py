@@ -20,6 +20,11 @@ from reconciler.records import MISSING
 Array = np.ndarray[Any, Any]
 
 EARLY, LATE = 5, 10
+"""Days that all entries, or all payments, of one day may be off together."""
+
+PART_EARLY, PART_LATE = 1, 5
+"""Days that a part of what is open may be off: more of them, and chance finds a sum."""
+
 _SAME = ("account", "currency", "bond")
 
 
@@ -27,15 +32,16 @@ def pair_groups(board: Board, bonds: Pairs) -> None:
     """Takes sums of entries that pay one payment and of payments that one entry pays. `bonds`: entries that name several bonds."""
     _days_of_entries(board)
     _days_of_payments(board)
-    _parts(board, *_edges(board, _SAME), by_payment=True)
-    _parts(board, *_edges(board, _SAME), by_payment=False)
-    _parts(board, *_named_edges(board, bonds), by_payment=False)
+    for early, late in ((0, 0), (PART_EARLY, PART_LATE)):
+        _parts(board, *_edges(board, _SAME, early, late), by_payment=True)
+        _parts(board, *_edges(board, _SAME, early, late), by_payment=False)
+        _parts(board, *_named_edges(board, bonds, early, late), by_payment=False)
 
 
 def propose(board: Board) -> tuple[Array, Array, Array, Array]:
     """Sums that only add up: group number, payment, entry and share, of rows that are still open; nothing is taken."""
     found = []
-    payment, entry = _edges(board, ("account", "currency"), most=MOST * MOST, early=1, late=3)
+    payment, entry = _edges(board, ("account", "currency"), 0, 0)
     for by_payment in (True, False):
         found.append(_solutions(board, payment, entry, by_payment))
     groups = np.concatenate([found[0][0], found[1][0] + len(board.items)])
@@ -109,7 +115,7 @@ def _with_rest(board: Board, payments: Array, group: Array, over: Array) -> Arra
     return shares
 
 
-def _edges(board: Board, names: tuple[str, ...], most: int = MOST * MOST, early: int = EARLY, late: int = LATE) -> Pairs:
+def _edges(board: Board, names: tuple[str, ...], early: int, late: int) -> Pairs:
     """Open (payment, entry) pairs with equal facts and near days; crowds are left out."""
     payments, entries = board.open()
     if "bond" in names:
@@ -119,18 +125,18 @@ def _edges(board: Board, names: tuple[str, ...], most: int = MOST * MOST, early:
     payments = payments[board.i_expected[payments] != MISSING]
     day = () if "bond" in names else (board.i_days[payments],)
     a, b = keys.candidates(_key(board, "i", payments, names, *day),
-                           _key(board, "e", entries, names, *(() if "bond" in names else (board.e_days[entries],))), most)  # fmt: skip
+                           _key(board, "e", entries, names, *(() if "bond" in names else (board.e_days[entries],))), MOST * MOST)  # fmt: skip
     return _near(board, payments[a], entries[b], early, late)
 
 
-def _named_edges(board: Board, bonds: Pairs) -> Pairs:
+def _named_edges(board: Board, bonds: Pairs, early: int, late: int) -> Pairs:
     """Open pairs of entries that name several bonds with the payments of those bonds."""
     payments, _ = board.open()
     payments = payments[board.i_expected[payments] != MISSING]
     entry, code = bonds
     entry, code = entry[board.e_open[entry]], code[board.e_open[entry]]
     a, b = keys.candidates(_key(board, "i", payments, _SAME), _key(board, "e", entry, ("account", "currency"), code), MOST * MOST)
-    payment, entry = _near(board, payments[a], entry[b], EARLY, LATE)
+    payment, entry = _near(board, payments[a], entry[b], early, late)
     packed = np.unique(payment * len(board.e_open) + entry)
     return packed // max(len(board.e_open), 1), packed % max(len(board.e_open), 1)
 

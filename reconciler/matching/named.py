@@ -177,8 +177,19 @@ def _sound(board: Board, pairs: Pairs, trusted: Array) -> Pairs:
     size = np.abs(board.e_amount[entry].astype(float)) / np.maximum(np.abs(board.i_expected[payment].astype(float)), 1)
     alike = (size > 0.5) & (size < 2)
     keep = amount | ((account | (told_bond == bond)) & (currency | alike) & ((told_bond < 0) | (told_bond == bond)))
-    keep &= amount | trusted[payment] | (account & currency & alike)
+    keep &= amount | trusted[payment] | (account & currency & alike) | _adds_up(board, pairs, account & currency)
     return entry[keep], payment[keep]
+
+
+def _adds_up(board: Board, pairs: Pairs, likely: Array) -> Array:
+    """True for the pairs of entries whose amount is the sum of all payments that they name with `likely` facts."""
+    entry, payment = pairs
+    size = len(board.e_open)
+    total, count = np.zeros(size, np.int64), np.zeros(size, np.int64)
+    np.add.at(total, entry[likely], board.i_expected[payment[likely]])
+    np.add.at(count, entry[likely], 1)
+    whole = (count > 1) & (np.abs(total - board.e_amount) <= count)
+    return np.asarray(likely & whole[entry])
 
 
 def _distinct(parts: Sequence[Pairs], size: int) -> Pairs:

@@ -82,10 +82,20 @@ def mark_repeats(board: Board) -> None:
     paying, left = paying[few], left[few]
     a, b = keys.candidates(left, right, most=4096)
     first, again = paying[a], free[b]
-    for column in (board.e_reference, board.e_bond):
-        one, other = column[first], column[again]
-        keep = (one == other) | (one < 0) | (other < 0)
-        first, again = first[keep], again[keep]
+    keep = _same_story(board, first, again)
+    first, again = first[keep], again[keep]
     order = np.lexsort((board.entry_order(first), again)) if len(again) else again
     rows, place = np.unique(again[order], return_index=True)
     board.repeat(rows, first[order][place])
+
+
+def _same_story(board: Board, first: Array, again: Array) -> Array:
+    """True where reference and bond agree as far as both tell them, and one of them does; where neither tells any, the narratives."""
+    agree, contradict, told = (np.zeros(len(first), np.bool_) for _ in range(3))
+    for column in (board.e_reference, board.e_bond):
+        one, other = column[first], column[again]
+        agree |= (one == other) & (one >= 0)
+        contradict |= (one != other) & (one >= 0) & (other >= 0)
+        told |= (one >= 0) | (other >= 0)
+    narrative = board.cash["narrative"].codes
+    return np.asarray(~contradict & (agree | (~told & (narrative[first] == narrative[again]))))
