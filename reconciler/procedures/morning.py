@@ -18,7 +18,7 @@ import numpy as np
 import pyarrow as pa
 
 from reconciler.bonds.terms import Terms
-from reconciler.breaks import causes, finding, ranking, stake
+from reconciler.breaks import causes, finding, proposing, ranking, stake
 from reconciler.breaks.given import Given
 from reconciler.expected import coupons, settlements
 from reconciler.expected.terms import resolve_terms
@@ -152,7 +152,7 @@ def reckon_again(state: State) -> State:
 def find_breaks(state: State) -> State:
     """Finding breaks"""
     items, breaks = finding.find_breaks(state.given)
-    return replace(state, items=items, breaks=breaks)
+    return replace(state, items=items, breaks=proposing.mention(state.given, breaks, state.paid.proposals))
 
 
 def weigh(state: State) -> State:
