@@ -261,7 +261,10 @@ class Studio:
         elif key == "layout":
             from reconciler.window.dialogs.layout import AssignColumns
 
-            made = AssignColumns(self.window, self.morning)
+            reason = "could be the settlement amount in more than one column ('Net Amount' and 'Total'); say which one it is."
+            file = next(path.name for path in sorted((self.morning / "confirmations").iterdir()))
+            made = AssignColumns(self.window, self.morning, [Problem(f"confirmations/{file}", 0, "", "", reason)],
+                                 self.window.loaded.day.source.tickets["broker"].values.to_pylist())  # fmt: skip
         else:
             made = Keys(self.window) if key == "keys" else About(self.window)
         made.show()

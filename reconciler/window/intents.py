@@ -39,8 +39,7 @@ def _sample(window: MainWindow) -> None:
 
 
 def _reload(window: MainWindow) -> None:
-    if window.loaded is not None and window.loaded.folder is not None:
-        window.load(window.loaded.folder, window.loaded.day.date)
+    window.load_again()
 
 
 def _problems(window: MainWindow) -> None:

@@ -49,7 +49,7 @@ def date_column(name: str, title: str, help_text: str, width: int = 100) -> Colu
     return Column(name, title, help_text, show, lambda data: _day_rank(data.table[name]), width, fit=True)
 
 
-def count_column(name: str, title: str, help_text: str, width: int = 92, alarm: str = "") -> Column:
+def count_column(name: str, title: str, help_text: str, width: int = 60, alarm: str = "") -> Column:
     """A column of whole numbers; with `alarm` a tone for those above zero."""
 
     def show(data: Records, at: Rows) -> list[Cell]:
@@ -63,7 +63,7 @@ def count_column(name: str, title: str, help_text: str, width: int = 92, alarm: 
                   descending_first=True)  # fmt: skip
 
 
-def amount_column(name: str, title: str, help_text: str, width: int = 132, signed: bool = False, alarm: str = "",
+def amount_column(name: str, title: str, help_text: str, width: int = 96, signed: bool = False, alarm: str = "",
                   stretch: int = 0) -> Column:  # fmt: skip
     """A column of money."""
 
@@ -169,23 +169,23 @@ def _file(data: FileRows, at: Rows) -> list[Cell]:
     for name in texts(data.table["file"].take(at)):
         one = data.read.get(name)
         place, _, short = name.rpartition("/")
-        told = (one.broker, one.layout, one.encoding, _DELIMITERS.get(one.delimiter, one.delimiter)) if one is not None else ()
+        told = (one.broker, one.encoding, _DELIMITERS.get(one.delimiter, one.delimiter), one.layout) if one is not None else ()
         cells.append(Cell(short, "  ·  ".join(part for part in (*told, f"in {place}" if place else "") if part), strong=True))
     return cells
 
 
 FILE_COLUMNS: tuple[Column, ...] = (
     Column("file", "File", "The file in the morning's folder; below it broker, layout, encoding and delimiter", _file,
-           lambda data: data.table["file"].rank(), 230, stretch=3),
-    text_column("currency", "Currency", "Rows and money are counted per file and currency", 76),
-    count_column("rows_read", "Rows read", "Lines of the file without title lines", 84),
-    count_column("rows_used", "Used", "Rows that became tickets, confirmations, entries …", 76),
-    count_column("rows_rejected", "Rejected", "Rows that could not be used; each is listed below with its reason", 78, "differ"),
-    count_column("rows_set_aside", "Set aside", "Rows that are no payments or are superseded", 80, "day"),
-    amount_column("amount_read", "Amount read", "Money on all rows", 134, stretch=1),
-    amount_column("amount_used", "Amount used", "Money on the rows used", 134, stretch=1),
-    amount_column("amount_rejected", "Rejected", "Money on the rejected rows", 116, alarm="differ"),
-    amount_column("amount_set_aside", "Set aside", "Money on the rows set aside", 116, alarm="day"),
+           lambda data: data.table["file"].rank(), 290, stretch=3),
+    text_column("currency", "Currency", "Rows and money are counted per file and currency", 66),
+    count_column("rows_read", "Rows", "Lines of the file without title lines"),
+    count_column("rows_used", "Used", "Rows that became tickets, confirmations, entries …"),
+    count_column("rows_rejected", "Rejected", "Rows that could not be used; each is listed below with its reason", alarm="differ"),
+    count_column("rows_set_aside", "Set aside", "Rows that are no payments or are superseded", alarm="day"),
+    amount_column("amount_read", "Amount read", "Money on all rows", stretch=1),
+    amount_column("amount_used", "Amount used", "Money on the rows used", stretch=1),
+    amount_column("amount_rejected", "Rejected", "Money on the rejected rows", 80, alarm="differ"),
+    amount_column("amount_set_aside", "Set aside", "Money on the rows set aside", 80, alarm="day"),
 )
 
 FILE_FACTS = [
@@ -250,7 +250,7 @@ AHEAD_COLUMNS: tuple[Column, ...] = (
     text_column("kind", "Kind", "Trade, coupon or redemption", 100),
     text_column("account", "Account", "The account it is paid to", 140, stretch=1),
     text_column("currency", "Currency", "The currency it is paid in", 80),
-    amount_column("amount_minor", "Amount", "Money in is positive", 150, signed=True),
+    amount_column("amount_minor", "Amount", "Money in is positive", 130, signed=True),
 )
 
 AHEAD_FACTS = [

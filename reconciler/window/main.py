@@ -124,6 +124,11 @@ class MainWindow(QMainWindow):
         """The folder asked for last, whether or not it could be loaded."""
         return self._wanted[0] if self._wanted else None
 
+    def load_again(self) -> None:
+        """Reads the morning asked for last once more."""
+        if self._wanted is not None:
+            self.load(*self._wanted)
+
     def run(self, job: jobs.Job, words: str) -> jobs.Job:
         """Shows a job's progress and runs it."""
         self.job = job

@@ -45,7 +45,8 @@ QLineEdit, QComboBox, QAbstractSpinBox, QPlainTextEdit {
 QLineEdit:focus, QComboBox:focus, QAbstractSpinBox:focus, QPlainTextEdit:focus { border: 2px solid @accent; padding: 4px 9px; }
 QLineEdit#search { border-radius: 16px; padding: 5px 14px; }
 QLineEdit#search:focus { padding: 4px 13px; }
-QComboBox::drop-down { border: none; width: 22px; }
+QComboBox::drop-down { border: none; width: 26px; }
+QComboBox::down-arrow { image: url("@icons/down.svg"); width: 14px; height: 14px; }
 QComboBox QAbstractItemView { background: @surface; border: 1px solid @outline; selection-background-color: @wash;
     selection-color: @ink; outline: none; padding: 4px; }
 QCheckBox { background: transparent; spacing: 8px; }
@@ -79,6 +80,7 @@ QSplitter::handle:hover { background: @outline; border-radius: 2px; }
 QProgressBar { background: @hairline; border: none; border-radius: 3px; max-height: 6px; min-height: 6px; }
 QProgressBar::chunk { background: @accent; border-radius: 3px; }
 
+QAbstractScrollArea::corner { background: transparent; border: none; }
 QScrollBar:vertical { background: transparent; width: 12px; margin: 2px; }
 QScrollBar:horizontal { background: transparent; height: 12px; margin: 2px; }
 QScrollBar::handle { background: @outline; border-radius: 4px; min-height: 32px; min-width: 32px; }

@@ -144,7 +144,8 @@ def style_sheet(colours: tokens.Palette) -> str:
     from reconciler.window.stylesheet import SHEET
 
     text = SHEET
-    values = {**colours.__dict__, **{f"size_{n}": f"{v}px" for n, v in tokens.TYPE.items()}, "radius": f"{tokens.RADIUS}px"}
+    values = {**colours.__dict__, **{f"size_{n}": f"{v}px" for n, v in tokens.TYPE.items()}, "radius": f"{tokens.RADIUS}px",
+              "icons": (resources.folder() / "icons").as_posix()}  # fmt: skip
     # longest names first, so that @differ does not eat the beginning of @differ_wash
     for name in sorted(values, key=len, reverse=True):
         text = text.replace(f"@{name}", str(values[name]))

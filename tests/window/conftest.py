@@ -20,8 +20,9 @@ from tests.window import fabricated
 
 
 @pytest.fixture(autouse=True)
-def own_settings(tmp_path: Path) -> None:
-    """Settings of this test only."""
+def own_settings(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    """Settings and layouts of this test only."""
+    monkeypatch.setattr("reconciler.settings.user_folder", lambda: tmp_path / "config")
     QSettings.setPath(QSettings.Format.IniFormat, QSettings.Scope.UserScope, str(tmp_path / "settings"))
 
 

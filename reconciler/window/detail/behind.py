@@ -110,6 +110,12 @@ def differences(loaded: Loaded, row: int) -> list[Told]:
     return told
 
 
+def next_step(loaded: Loaded, row: int) -> str:
+    """What is to be done about the payment, "" when nothing is."""
+    found = telling_first(loaded, row)
+    return str(found[0]["next_step"]) if found else ""
+
+
 def bond_heading(loaded: Loaded, row: int) -> tuple[str, str]:
     """A bond's description, and its main terms below it."""
     bond = loaded.bonds.row(row)

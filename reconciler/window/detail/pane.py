@@ -44,6 +44,7 @@ class DetailPane(QFrame):
         self.coupons = _list("Coupons of this bond")
         self.strip, self.wide_strip = CouponStrip(), CouponStrip()
         self.proof, self.next_step = Notice(), label("", "", wrap=True, selectable=True)
+        self.next_head, self.next_here = label("What next", "caption"), label("", "", wrap=True, selectable=True)
         self.differs = QVBoxLayout()
         self.pages = QStackedWidget()
         self.pages.addWidget(self._accounts_page())
@@ -125,6 +126,10 @@ class DetailPane(QFrame):
             notice = Notice()
             notice.say(told.title, told.text, told.look)
             self.differs.addWidget(notice)
+        step = behind.next_step(loaded, self._row)
+        self.next_here.setText(step)
+        self.next_here.setVisible(bool(step))
+        self.next_head.setVisible(bool(step))
 
     def _fill_working(self, loaded: Loaded) -> None:
         shown = behind.working(loaded, self._row)
@@ -148,9 +153,13 @@ class DetailPane(QFrame):
         inner.setObjectName("scrolled")
         column = QVBoxLayout(inner)
         column.setContentsMargins(0, 0, 0, 0)
+        column.setSpacing(8)
         column.addWidget(label("What differs", "caption"))
         self.differs.setSpacing(8)
         column.addLayout(self.differs)
+        column.addSpacing(4)
+        column.addWidget(self.next_head)
+        column.addWidget(self.next_here)
         column.addStretch(1)
         line.addWidget(scrolled(inner, "What differs"), 5)
         return page

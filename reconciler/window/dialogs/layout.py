@@ -7,13 +7,14 @@ the user's own folder of layouts and reads the morning again, so that the questi
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
 from PySide6.QtCore import Qt
 from PySide6.QtWidgets import QComboBox, QGridLayout, QHBoxLayout, QLabel, QLineEdit, QWidget
 
-from reconciler.problems import KnownError
+from reconciler.problems import KnownError, Problem
 from reconciler.window.detail.pane import scrolled
 from reconciler.window.dialogs.dialog import Dialog
 from reconciler.window.widgets import Notice, ShortLabel, card, label, restyle
@@ -28,13 +29,16 @@ _IGNORED = "not used"
 class AssignColumns(Dialog):
     """Asks what the columns of a confirmations file mean; `saved` is the layout's path afterwards."""
 
-    def __init__(self, parent: QWidget | None, folder: Path, file: str = "") -> None:
+    def __init__(
+        self, parent: QWidget | None, folder: Path, problems: Sequence[Problem | str] = (), brokers: Sequence[str] = ()
+    ) -> None:
         super().__init__(parent, "Assign a file's columns", "Say once what this broker's columns mean; the next file like it is read "
                          "without asking.", "Save layout")  # fmt: skip
         from reconciler.procedures import layouts
 
         self.resize(1120, 720)
         self._layouts, self.folder = layouts, folder
+        self._problems, self._brokers = tuple(problems), tuple(brokers)
         self.saved: Path | None = None
         self.look: Any = None
         self.files = QComboBox()
@@ -58,15 +62,20 @@ class AssignColumns(Dialog):
         self._options = QHBoxLayout()
         self._options.setSpacing(14)
         self.inside.addLayout(self._options)
+        self._word_line = QHBoxLayout()
+        self._word_line.setSpacing(10)
+        self._word_line.addStretch(1)
+        self.inside.addLayout(self._word_line)
         self.said = label("", "differ", wrap=True)
         self.inside.addWidget(self.said)
-        for name, told in layouts.files(folder):
+        for name, told in layouts.files(folder, self._problems):
             self.files.addItem(f"{name}  –  {told}", name)
         self.files.currentIndexChanged.connect(lambda _index: self.show_file(self.files.currentData()))
-        place = max(self.files.findData(file), 0)
-        self.files.setCurrentIndex(place)
         if self.files.count():
             self.show_file(self.files.currentData())
+        else:
+            self.question.say("This morning has no confirmations files.", look="differ")
+            self.main_button.setEnabled(False)  # type: ignore[union-attr]
 
     def _make_head(self) -> None:
         line = QHBoxLayout()
@@ -82,7 +91,7 @@ class AssignColumns(Dialog):
     def show_file(self, name: str) -> None:
         """Shows the columns of another file."""
         try:
-            self.look = self._layouts.look(self.folder, name)
+            self.look = self._layouts.look(self.folder, name, self._problems, self._brokers)
         except KnownError as fault:
             self.question.say(str(fault), look="differ")
             self.main_button.setEnabled(False)  # type: ignore[union-attr]
@@ -97,6 +106,9 @@ class AssignColumns(Dialog):
 
     def _fill_grid(self) -> None:
         _clear(self._grid)
+        _clear(self._word_line)
+        self._word_line.addStretch(1)
+        self.words = {}
         self.facts, self.becomes = {}, {}
         for place, words in enumerate(("Column in the file", "First values", "What it is", "Is read as")):
             self._grid.addWidget(label(words, "caption"), 0, place)
@@ -137,6 +149,19 @@ class AssignColumns(Dialog):
             self.choices[choice.key] = chooser
         self._options.addStretch(1)
 
+    def _fill_words(self, words: Sequence[str]) -> None:
+        """A line for words of sides that are not known; what was said before stays."""
+        for word in words:
+            if word not in self.words:
+                chooser = QComboBox()
+                chooser.setAccessibleName(f"What the side {word} means")
+                for value, told in (("", "not said"), ("buy", "buy"), ("sell", "sell")):
+                    chooser.addItem(told, value)
+                chooser.currentIndexChanged.connect(lambda _index: self.renew())
+                self._word_line.insertWidget(self._word_line.count() - 1, label(f"{word}  means", "soft"))
+                self._word_line.insertWidget(self._word_line.count() - 1, chooser)
+                self.words[word] = chooser
+
     def assignment(self) -> dict[str, str]:
         """Which fact each heading is."""
         return {heading: chooser.currentData() for heading, chooser in self.facts.items() if chooser.currentData()}
@@ -144,6 +169,10 @@ class AssignColumns(Dialog):
     def options(self) -> dict[str, str]:
         """How numbers, days, sides and faces are told."""
         return {key: chooser.currentData() for key, chooser in self.choices.items() if chooser.currentData()}
+
+    def sides(self) -> dict[str, str]:
+        """What words of sides were said to mean."""
+        return {word: chooser.currentData() for word, chooser in self.words.items() if chooser.currentData()}
 
     def assign(self, heading: str, fact: str) -> None:
         """Assigns a column (as a person would in the list)."""
@@ -153,20 +182,23 @@ class AssignColumns(Dialog):
         """Shows what the values become under what is assigned now."""
         if self.look is None or not self.facts:
             return
-        seen = self._layouts.becomes(self.look, self.assignment(), self.options())
+        seen = self._layouts.becomes(self.look, self.assignment(), self.options(), self.sides())
         for heading, target in self.becomes.items():
             read = seen.columns.get(heading)
             texts = [value.text for value in read[:_SHOWN_VALUES]] if read else []
             wrong = next((value.problem for value in read if value.problem), "") if read else ""
             target.setText(wrong or "   ·   ".join(texts))
             restyle(target, look="differ" if wrong else "soft" if not texts else "")
+        self._fill_words(seen.words)
         self.said.setText(" ".join(seen.problems))
 
     def accept(self) -> None:
         if self.look is None:
             return
         try:
-            self.saved = self._layouts.save(self.look, self.broker.text().strip(), self.assignment(), self.options())
+            self.saved = self._layouts.save(
+                self.look, self.broker.text().strip(), self.assignment(), self.options(), self.sides()
+            )
         except KnownError as fault:
             self.said.setText(str(fault))
             return
@@ -181,12 +213,13 @@ def _clear(layout: Any) -> None:
             widget.deleteLater()
 
 
-def ask_layout(window: MainWindow, file: str = "") -> None:
+def ask_layout(window: MainWindow) -> None:
     """Opens the dialog on the morning's folder; reads the morning again when a layout was saved."""
     folder = window.folder_wanted()
     if folder is None:
         window.banner.say("Open a morning first; its confirmations' columns can then be assigned.", bad=True)
         return
-    dialog = AssignColumns(window, folder, file)
+    brokers = window.loaded.day.source.tickets["broker"].values.to_pylist() if window.loaded is not None else []
+    dialog = AssignColumns(window, folder, window.problems, brokers)
     if dialog.exec() and dialog.saved is not None:
-        window.act("reload")
+        window.load_again()
