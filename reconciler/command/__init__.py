@@ -9,6 +9,7 @@ from __future__ import annotations
 
 import argparse
 import importlib
+import os
 import sys
 import tempfile
 import traceback
@@ -53,24 +54,34 @@ def main(told: Sequence[str]) -> int:
     if getattr(arguments, "run", None) is None:
         parser().print_usage(sys.stderr)
         return NOTHING
+    _write_any_letter()
     try:
-        return int(arguments.run(arguments))
+        code = int(arguments.run(arguments))
+        sys.stdout.flush()
+        return code
     except KnownError as fault:
         tell(fault.problems)
         return NOTHING
     except KeyboardInterrupt:
-        print("Stopped; nothing was written.", file=sys.stderr)
+        print("Stopped before the end.", file=sys.stderr)
         return NOTHING
     except MemoryError:
         print("There is not enough memory for this morning; close other programs or split the files.", file=sys.stderr)
         return NOTHING
     except BrokenPipeError:
-        # whoever read our output has gone; that is no fault
-        sys.stderr.close()
+        # whoever read our output has gone; that is no fault, and the interpreter must not complain of it on its way out
+        os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
         return NOTHING
     except Exception:
         print(_report(traceback.format_exc()), file=sys.stderr)
         return OUR_FAULT
+
+
+def _write_any_letter() -> None:
+    """Lets names with letters that the terminal does not have be written in another way instead of failing."""
+    for stream in (sys.stdout, sys.stderr):
+        if hasattr(stream, "reconfigure"):
+            stream.reconfigure(errors="backslashreplace")
 
 
 def tell(problems: Sequence[Problem | str]) -> None:

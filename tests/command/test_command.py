@@ -100,6 +100,30 @@ def test_without_arguments_the_window_opens(monkeypatch: pytest.MonkeyPatch) -> 
     assert door.main([]) == 7
 
 
+def _run(code: str, **more: str) -> subprocess.CompletedProcess[str]:
+    import os
+
+    return subprocess.run([sys.executable, "-c", code], capture_output=True, text=True, timeout=60, check=False,
+                          env={**os.environ, **more})  # fmt: skip
+
+
+def test_letters_the_terminal_does_not_have_are_no_fault() -> None:
+    code = ("import sys\nfrom types import ModuleType\nfrom reconciler import command\nm = ModuleType('m')\nm.NAME, m.HELP = 'w', 'W.'\n"
+            "m.add_arguments = lambda p: None\nm.run = lambda a: print('G\u00fcnther \u2212') or 1\ncommand.modules = lambda: [m]\n"
+            "sys.exit(command.main(['w']))")  # fmt: skip
+    done = _run(code, PYTHONIOENCODING="ascii", PYTHONUTF8="0")
+    assert (done.returncode, done.stderr) == (1, "")
+    assert done.stdout.startswith("G\\xfcnther")
+
+
+def test_whoever_reads_may_go_away() -> None:
+    code = ("import os, sys\nfrom types import ModuleType\nfrom reconciler import command\nm = ModuleType('m')\nm.NAME, m.HELP = 'w', 'W.'\n"
+            "m.add_arguments = lambda p: None\nm.run = lambda a: print('x' * 100) or 0\ncommand.modules = lambda: [m]\n"
+            "r, w = os.pipe()\nos.dup2(w, 1)\nos.close(w)\nos.close(r)\nsys.exit(command.main(['w']))")  # fmt: skip
+    done = _run(code)
+    assert (done.returncode, done.stderr) == (command.NOTHING, "")
+
+
 def test_headless_commands_know_no_qt() -> None:
     code = ("import sys\nfrom reconciler import command\ncommand.parser()\nfrom reconciler.procedures import morning\n"
             "print([name for name in sys.modules if name.startswith(('PySide6', 'shiboken'))])")  # fmt: skip
