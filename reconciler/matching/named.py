@@ -26,7 +26,8 @@ Array = np.ndarray[Any, Any]
 # One number must not stand for more payments than a person could net in one entry.
 _MOST = 64
 _PUNCTUATION = ".,;:()[]{}<>\"'#!?*="
-_INNER = r"[/+;,:=|&]"
+# Signs that join names, and those that join names or stand inside one (26/00133;26/00190).
+_INNER = (r"[+;,:=|&]", r"[/+;,:=|&]")
 
 
 @dataclass(frozen=True)
@@ -146,12 +147,14 @@ def _words(values: Any) -> tuple[Array, Any]:
     """The words of distinct texts, in capitals, that may be a name (four characters, a digit), and which text each is of."""
     parts = pc.utf8_split_whitespace(pc.utf8_upper(values))
     owners, words = pc.list_parent_indices(parts).to_numpy(), pc.utf8_trim(parts.flatten(), _PUNCTUATION)
-    joined = np.flatnonzero(pc.match_substring_regex(words, _INNER).to_numpy(zero_copy_only=False))
-    if len(joined):
-        split = pc.split_pattern_regex(words.take(pa.array(joined)), _INNER)
-        inner = joined[pc.list_parent_indices(split).to_numpy()]
-        owners = np.concatenate((owners, owners[inner]))
-        words = pa.concat_arrays([words, pc.utf8_trim(split.flatten(), _PUNCTUATION)])
+    whole_owners, whole_words = owners, words
+    for signs in _INNER:
+        joined = np.flatnonzero(pc.match_substring_regex(whole_words, signs).to_numpy(zero_copy_only=False))
+        if len(joined):
+            split = pc.split_pattern_regex(whole_words.take(pa.array(joined)), signs)
+            inner = joined[pc.list_parent_indices(split).to_numpy()]
+            owners = np.concatenate((owners, whole_owners[inner]))
+            words = pa.concat_arrays([words, pc.utf8_trim(split.flatten(), _PUNCTUATION)])
     keep = pc.match_substring_regex(words, "[0-9]").to_numpy(zero_copy_only=False)
     keep &= pc.greater_equal(pc.utf8_length(words), 4).to_numpy(zero_copy_only=False)
     kept = np.flatnonzero(keep)
@@ -183,13 +186,14 @@ def _sound(board: Board, pairs: Pairs, trusted: Array) -> Pairs:
 
 def _adds_up(board: Board, pairs: Pairs, likely: Array) -> Array:
     """True for the pairs of entries whose amount is the sum of all payments that they name with `likely` facts."""
-    entry, payment = pairs
-    size = len(board.e_open)
+    size, width = len(board.e_open), max(len(board.i_open), 1)
+    once = keys.distinct(pairs[0][likely] * width + pairs[1][likely])
+    entry, payment = once // width, once % width
     total, count = np.zeros(size, np.int64), np.zeros(size, np.int64)
-    np.add.at(total, entry[likely], board.i_expected[payment[likely]])
-    np.add.at(count, entry[likely], 1)
+    np.add.at(total, entry, board.i_expected[payment])
+    np.add.at(count, entry, 1)
     whole = (count > 1) & (np.abs(total - board.e_amount) <= count)
-    return np.asarray(likely & whole[entry])
+    return np.asarray(likely & whole[pairs[0]])
 
 
 def _distinct(parts: Sequence[Pairs], size: int) -> Pairs:
