@@ -134,7 +134,7 @@ def confirmation_row(facts: dict[str, Any], manner: Manner, day_style: str) -> d
         "side": manner.sides[0 if facts["side"] > 0 else 1],
         "face": number_style(text(face), manner.thousands, manner.point, manner.negative),
         "price": _price(facts, manner),
-        "accrued_days": str(facts["accrued_days"]),
+        "accrued_days": "" if facts["accrued_days"] is None else str(facts["accrued_days"]),
         "accrued": amount(facts["accrued"]),
         "fees": amount(facts["fees"]),
         "settlement": amount(facts["settlement"]),

@@ -3,7 +3,8 @@
     cases       what each party told beside what the terms say
     reckoning   the payment reckoned again from changed facts
     accruals    variants  readings  slips    the ways of going wrong, each one entry in a list
-    search      all of them over all cases: singles, pairs, slips on top
+    trying      one recomputed payment held against what was told
+    singles     pairs      search    all ways over all cases: one, two, slips on top
     judging     when a fit is proof
     inputs      dates     why a told price, face, fee, side or day is wrong in itself
     naming      the outcome, put on the breaks

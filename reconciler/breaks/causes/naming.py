@@ -16,7 +16,8 @@ from reconciler.bonds.terms import Terms
 from reconciler.breaks.causes import dates, inputs, search
 from reconciler.breaks.causes.cases import Cases, from_breaks
 from reconciler.breaks.causes.judging import CHANCE, COARSE
-from reconciler.breaks.causes.search import FOLLOWS, Hypothesis, Search
+from reconciler.breaks.causes.singles import FOLLOWS
+from reconciler.breaks.causes.trying import Hypothesis, Search
 from reconciler.money import MISSING, to_text
 from reconciler.records import Table, Words, table
 
