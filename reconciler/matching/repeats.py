@@ -106,7 +106,9 @@ def repeated_tickets(tickets: Table, facts: Mapping[str, Array], confirmation_of
     """Tickets in force without a confirmation that repeat a paired one under another number, and which one."""
     alone = np.flatnonzero(active & (confirmation_of < 0))
     paired = np.flatnonzero(active & (confirmation_of >= 0))
-    known = alone[np.all([facts[name][alone] != MISSING for name in ("bond", "face", "amount")], axis=0)] if len(alone) else alone
+    # A ticket keyed without its amount is known by its price.
+    told = {name: facts[name][alone] != MISSING for name in ("bond", "face", "amount", "price")}
+    known = alone[told["bond"] & told["face"] & (told["amount"] | told["price"])]
     if not len(known) or not len(paired):
         return keys.NO_PAIRS
     of = np.full(len(tickets), -1, np.int64)

@@ -101,9 +101,11 @@ def pay(due: Due, number: int, rng: random.Random) -> None:
     entry = Entry(
         f"C{number:06d}", due.account, truth.currency, truth.day, truth.amount, f"{word} {due.bond.description}"
     )
-    manner = rng.choice(("bond", "bond", "reference", "narrative", "two entries", "bond", "lower"))
-    if manner in ("bond", "two entries"):
+    manner = rng.choice(("bond", "bond", "reference", "narrative", "two entries", "bank's own", "lower"))
+    if manner in ("bond", "two entries", "bank's own"):
         entry.bond = due.bond.bond
+        if manner == "bank's own":
+            entry.reference = f"CA{rng.randint(10**8, 10**9)}"
     elif manner == "reference":
         entry.reference = due.bond.bond
     elif manner == "lower":

@@ -53,3 +53,12 @@ def bank_sign(trade: Trade, rng: random.Random) -> set[tuple[str, str]] | None:
         return None
     trade.bank[0].amount = -trade.bank[0].amount
     return {("settlement amount", "Bank")}
+
+
+def bank_one_unit_off(trade: Trade, rng: random.Random) -> set[tuple[str, str]] | None:
+    """No break: one smallest unit is within tolerance."""
+    if not trade.bank or trade.truth.state == "due":
+        return None
+    trade.bank[0].amount += rng.choice((-1, 1))
+    trade.truth.state = "within tolerance"
+    return set()

@@ -20,6 +20,15 @@ from tests.oracle.plants import TRADE_PLANTS
 from tests.oracle.world import CLOSINGS, World
 
 
+STYLES = (
+    ("T{:06d}", "{0:.2}{1}"),
+    ("1{:05d}", "{0:.3}-{1}"),
+    ("TK-2026-{}", "{1}"),
+    ("26/{:05d}", "{0:.1}/{1}/26"),
+)
+"""Ways of numbering: our tickets and the brokers' references."""
+
+
 def build(seed: int, trades: int = 300, today: date = date(2026, 3, 31), planted: float = 0.25) -> World:
     """A morning of about `trades` trades, a share of them with a planted fault, and coupons and redemptions to match.
 
@@ -28,6 +37,7 @@ def build(seed: int, trades: int = 300, today: date = date(2026, 3, 31), planted
     rng = random.Random(seed)
     since = today - timedelta(days=14)
     scene = Scene(rng, since, today, CLOSINGS)
+    scene.styles, scene.desk_codes = STYLES[seed % len(STYLES)], seed % 2 == 1
     bonds = [make(scene) for _ in range(max(2, trades // 250)) for make in KINDS.values()]
     dealt: list[Trade] = []
     while len(dealt) < trades:
@@ -38,6 +48,8 @@ def build(seed: int, trades: int = 300, today: date = date(2026, 3, 31), planted
     dues = bank.expect(bonds, positions, since, today, rng)
     as_of = _as_of(rng, since, today)
     world = World(since, today, bonds, dealt, dues, positions, as_of, show_zero=rng.random() < 0.5)
+    if rng.random() < 0.4:
+        world.earlier = {account: since - timedelta(days=20) for account in ACCOUNTS[:2]}
     world.bond_rows = [row(bond) for bond in bonds]
     for trade in dealt:
         if trade.paid:
@@ -127,13 +139,13 @@ def _net_trades(trades: list[Trade], rng: random.Random) -> None:
             waiting[key] = trade
             continue
         names = [other.true["ticket"], trade.true["ticket"]]
-        one = other.bank[0]
+        one, signs = other.bank[0], (";", " ", ", ") if "/" in names[0] else ("/", ";", " ")
         joined = replace(
             one,
             amount=one.amount + trade.bank[0].amount,
             bond="",
             narrative="NET SETTLEMENT",
-            reference=rng.choice(("/", ";", " ")).join(names),
+            reference=rng.choice(signs).join(names),
         )
         if rng.random() < 0.4:
             joined.reference, joined.narrative = "", f"NET OF {names[0]} AND {names[1]}"
@@ -156,7 +168,7 @@ def _twins(world: World, rng: random.Random) -> None:
         and len(t.bank) <= 1
     ]
     for trade in rng.sample(plain, len(plain) // 40):
-        number = f"T{len(world.trades) + 1:06d}"
+        number = f"{trade.true['ticket']}-2"
         own = {"ticket": number, "broker_reference": f"{trade.true['broker_reference']}7", "desk_reference": number}
         truth = replace(trade.truth, key=(number,), must=set(), entries=set())
         assert trade.desk and trade.broker
@@ -173,7 +185,7 @@ def _twins(world: World, rng: random.Random) -> None:
         twin.broker["desk_reference"] = ""  # type: ignore[index]
         for entry in trade.bank:
             entry.reference, entry.narrative, entry.bond = trade.true["ticket"], "SECURITIES", ""
-            twin.bank = [replace(entry, entry=f"E{number[1:]}", reference=number)]
+            twin.bank = [replace(entry, entry=f"E{len(world.trades) + 1:06d}", reference=number)]
         world.trades.append(twin)
 
 

@@ -156,11 +156,12 @@ def deal(scene: Scene, bond: Bond, number: int) -> Trade | None:
     broker, account, side = rng.choice(BROKERS), rng.choice(ACCOUNTS), rng.choice((1, -1))
     price, price_text = price_for(bond, rng)
     fees = rng.choice((None, None, 0, rng.randint(1, 40) * 5 * 10 ** DIGITS[bond.currency], rng.randint(101, 99999)))
+    ticket = scene.styles[0].format(number)
     facts = reckon(bond, {
-        "ticket": f"T{number:06d}", "trade_date": day, "settlement_date": settle, "bond": bond.bond, "side": side,
+        "number": number, "ticket": ticket, "trade_date": day, "settlement_date": settle, "bond": bond.bond, "side": side,
         "face": face_for(bond, rng), "price": price, "price_text": price_text, "fees": fees, "currency": bond.currency,
-        "broker": broker, "account": account, "broker_reference": f"{broker[:2].upper()}{number * 7 + 300000}",
-        "desk_reference": f"T{number:06d}", "yield_text": "", "status": "new", "quote": bond.quote,
+        "broker": broker, "account": account, "desk_reference": ticket,
+        "broker_reference": scene.styles[1].format(broker.upper(), number * 7 + 300000), "yield_text": "", "status": "new", "quote": bond.quote,
     })  # fmt: skip
     if facts["settlement"] <= 0:
         return None
@@ -197,9 +198,20 @@ def deal(scene: Scene, bond: Bond, number: int) -> Trade | None:
 def pay(trade: Trade, rng: random.Random) -> None:
     """The bank's booking of a trade, in one of the manners banks have of naming what they pay."""
     facts, amount = trade.true, trade.cash
-    number = facts["ticket"][1:]
+    number = f"{facts['number']:06d}"
     manner = rng.choice(
-        ("ticket", "ticket", "broker", "bond", "narrative", "broker in narrative", "worded", "both", "two entries")
+        (
+            "ticket",
+            "ticket",
+            "broker",
+            "bond",
+            "narrative",
+            "broker in narrative",
+            "worded",
+            "both",
+            "two entries",
+            "bank's own",
+        )  # fmt: skip
     )
     word = "PURCHASE" if facts["side"] > 0 else "SALE"
     entry = Entry(f"E{number}", facts["account"], facts["currency"], facts["settlement_date"], amount,
@@ -214,6 +226,8 @@ def pay(trade: Trade, rng: random.Random) -> None:
         entry.narrative += f" {facts['ticket']} {trade.bond.description}"
     if manner == "broker in narrative":
         entry.narrative += f', "{facts["broker"]}", REF {facts["broker_reference"]}'
+    if manner == "bank's own":
+        entry.reference, entry.bond = f"DVP{rng.randint(10**7, 10**8)}", facts["bond"]
     if manner == "worded":
         entry.reference = f"TRADE {facts['ticket']}"
     trade.bank = [entry]

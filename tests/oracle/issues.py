@@ -38,6 +38,10 @@ class Scene:
         self, rng: random.Random, since: date, today: date, closings: tuple[tuple[str, date, bool], ...]
     ) -> None:
         self.rng, self.since, self.today, self.closings, self.made = rng, since, today, closings, 0
+        self.styles = ("T{:06d}", "{0:.2}{1}")
+        """How our ticket numbers and a broker's references look: by number, and by the broker's name and a number."""
+        self.desk_codes = False
+        """Whether some bonds go by a code of the desk instead of an ISIN."""
 
     def coupon_day(self) -> date:
         """A day for coupons: six times of ten one inside the window, else anywhere."""
@@ -57,6 +61,8 @@ class Scene:
     def new(self, currency: str, calendar: str, kind: str, maturity: date, issued: date, **terms: object) -> Bond:
         self.made += 1
         code = isin("ZZ", f"{self.made:04d}{self.rng.randint(0, 99999):05d}")
+        if self.desk_codes and self.rng.random() < 0.08:
+            code = f"{self.rng.choice(STEM).upper()}{self.made:03d}"
         name = f"{self.rng.choice(STEM)} {self.rng.choice(TRADE)}"
         bond = Bond(code, name, currency, kind, maturity, issued, self.calendar(calendar), **terms)  # type: ignore[arg-type]
         rate = f" {float(bond.rate):g}" if bond.rate else ""

@@ -39,13 +39,19 @@ def safe_trades(world: World) -> Callable[[Trade], bool]:
 
 def odd_bonds(world: World, scene: Scene, rng: random.Random) -> None:
     """Trades in bonds that bonds.csv does not have, has twice in two versions, or has with terms that cannot be."""
-    spoils: list[tuple[str, dict[str, str] | None]] = [("unknown", None), ("two versions", {})]
+    spoils: list[tuple[str, dict[str, str] | None]] = [
+        ("unknown", None),
+        ("two versions", {}),
+        ("the same row twice", {}),
+    ]
     for name, spoilt in [*spoils, *SPOILT_BONDS.items()]:
         bond = scene.plain("EUR", "XECB", 1)
         while any(world.since <= payment_date(bond, day) <= world.today for _, day, _ in payments(bond)):
             bond = scene.plain("EUR", "XECB", 1)
         if name != "unknown":
             world.bond_rows.append({**row(bond), **(spoilt or {})})
+        if name == "the same row twice":
+            world.bond_rows.append(row(bond))
         if name == "two versions":
             world.bond_rows.append({**row(bond), "coupon_rate": text(bond.rate + Fraction(1, 8))})
         trade = None
@@ -53,9 +59,10 @@ def odd_bonds(world: World, scene: Scene, rng: random.Random) -> None:
             trade = deals.deal(scene, bond, len(world.trades) + 1)
         if trade.paid:
             deals.pay(trade, rng)
-        kind = "unknown bond" if name == "unknown" else "unsound terms"
-        trade.truth.amount, trade.truth.day, trade.truth.state = None, None, "break"
-        trade.truth.plant, trade.truth.must = f"bond: {name}", {(kind, "Terms")}
+        trade.truth.plant = f"bond: {name}"
+        if name != "the same row twice":
+            trade.truth.amount, trade.truth.day, trade.truth.state = None, None, "break"
+            trade.truth.must = {("unknown bond" if name == "unknown" else "unsound terms", "Terms")}
         trade.truth.entries = {entry.entry for entry in trade.bank}
         world.trades.append(trade)
         world.truths.append(trade.truth)

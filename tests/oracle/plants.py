@@ -21,6 +21,7 @@ from tests.oracle.bank_plants import (
     bank_currency,
     bank_late,
     bank_missing,
+    bank_one_unit_off,
     bank_sign,
 )
 from tests.oracle.deals import ACCOUNTS, BROKERS, Trade, reckon
@@ -233,6 +234,16 @@ def fee_on_ticket_only(trade: Trade, rng: random.Random) -> Must:
     return {("settlement amount", "Broker")}
 
 
+def fee_missing_on_the_ticket(trade: Trade, rng: random.Random) -> Must:
+    """The desk knows of no fee and tells an amount without one; broker and bank know it."""
+    facts = trade.desk
+    if not facts or not trade.true["fees"] or not trade.paid or not trade.broker or None in (
+        facts["settlement"], trade.broker["fees"]):  # fmt: skip
+        return None
+    trade.desk = {**_again(trade, facts, fees=0), "fees": None}
+    return {("settlement amount", "Desk")}
+
+
 def wrong_currency(party: str) -> TradePlant:
     def plant(trade: Trade, rng: random.Random) -> Must:
         facts = trade.broker if party == "Broker" else trade.desk
@@ -383,6 +394,8 @@ TRADE_PLANTS: dict[str, TradePlant] = {
     "side unreadable": rejected_confirmation("side", lambda told: "swap"),
     "broker one unit off": one_unit_off("Broker"),
     "desk one unit off": one_unit_off("Desk"),
+    "fee missing on the ticket": fee_missing_on_the_ticket,
+    "bank one unit off": bank_one_unit_off,
     "bank's amount": bank_amount,
     "bank late": bank_late,
     "bank missing": bank_missing,

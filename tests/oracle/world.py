@@ -45,6 +45,8 @@ class World:
     confirmations: list[dict[str, Any]] = field(default_factory=list)
     bond_rows: list[dict[str, str]] = field(default_factory=list)
     show_zero: bool = False
+    earlier: dict[str, date] = field(default_factory=dict)
+    """Accounts whose holdings are told a second time, as of an earlier day."""
 
     def write(self, folder: Path, order: int = 0) -> dict[str, Written]:
         """The morning folder; `order` above zero shuffles the rows of every file."""
@@ -72,7 +74,7 @@ class World:
             if manner.layout:
                 (folder / "layouts" / f"{manner.stem}.toml").write_text(manner.layout.lstrip(), encoding="utf-8")
             for part in range(manner.parts):
-                mine = [f for f in told if int(f["ticket"].strip("TXC")) % manner.parts == part]
+                mine = [f for f in told if f["number"] % manner.parts == part]
                 if mine:
                     name = f"confirmations/{manner.stem}_{self.today:%Y%m%d}{'_' + str(part + 1) if part else ''}.csv"
                     written[name] = confirmation_file(folder / name, shuffled(mine, rng), manner)
@@ -122,7 +124,13 @@ class World:
         rows = []
         for account, bond in self.positions.all():
             face = self.positions.held(account, bond, self.as_of[account])
-            if face or self.show_zero or (account, bond) in self.positions.first:
+            earlier = self.earlier.get(account)
+            if earlier:
+                old = self.positions.held(account, bond, earlier)
+                rows.append(
+                    {"account": account, "bond": bond, "face": money(old, currency[bond]), "as_of": earlier.isoformat()}
+                )
+            if face or earlier or self.show_zero or (account, bond) in self.positions.first:
                 rows.append(
                     {
                         "account": account,
