@@ -9,7 +9,7 @@ digits, which a spreadsheet would round, are written as text.
 from __future__ import annotations
 
 import datetime
-from collections.abc import Sequence
+from collections.abc import Iterable, Sequence
 from pathlib import Path
 from typing import Any
 
@@ -23,6 +23,8 @@ _CHUNK = 2_000
 _WIDEST = 60
 _SAMPLE = 1_000
 _TEXT_LIMIT = 32_767
+_EXACT = 10**15
+_DAY_ZERO = np.datetime64("1899-12-30", "D")
 
 
 def write(path: Path, columns: Sequence[Column], title: str = "", progress: Progress | None = None) -> None:
@@ -102,47 +104,44 @@ def _width(column: Column) -> float:
 
 def _rows(sheet: Any, columns: Sequence[Column], formats: _Formats, at: int) -> None:
     cells = [_cells(column, formats) for column in columns]
-    for row in range(len(cells[0]) if cells else 0):
-        for place, column in enumerate(cells):
-            cell = column[row]
-            if cell is None:
+    write_text, write_number = sheet.write_string, sheet.write_number
+    for row, line in enumerate(zip(*cells, strict=True), at):
+        for place, (value, form) in enumerate(line):
+            if value is None:
                 continue
-            value, form = cell
             if isinstance(value, str):
-                sheet.write_string(at + row, place, value[:_TEXT_LIMIT])
-            elif isinstance(value, datetime.date):
-                sheet.write_datetime(at + row, place, value, form)
+                write_text(row, place, value[:_TEXT_LIMIT])
             else:
-                sheet.write_number(at + row, place, value, form)
+                write_number(row, place, value, form)
 
 
-def _cells(column: Column, formats: _Formats) -> list[tuple[Any, Any] | None]:
-    """Every row's value and format, None for an empty cell."""
+def _cells(column: Column, formats: _Formats) -> Iterable[tuple[Any, Any]]:
+    """Every row's value (a number, or text; None for an empty cell) and format."""
+    texts = column.texts().to_pylist()
     if column.kind == "text":
-        return [(text, None) if text else None for text in column.texts().to_pylist()]
+        return [(text or None, None) for text in texts]
     if column.kind == "date":
-        return [_day(day, formats) for day in np.asarray(column.values, "datetime64[D]").tolist()]
-    numbers = np.asarray(column.values, np.int64).tolist()
+        return _days(column.values, texts, formats)
+    numbers = np.asarray(column.values, np.int64)
+    known = numbers != MISSING
     if column.kind == "amount":
-        digits = np.broadcast_to(np.asarray(2 if column.digits is None else column.digits), len(numbers)).tolist()
+        digits = np.broadcast_to(np.asarray(2 if column.digits is None else column.digits, np.int64), len(numbers))
+        forms = [formats.amount(places) for places in digits.tolist()]
+        values = numbers / 10.0**digits
     else:
-        digits = [DECIMAL_PLACES if column.kind == "decimal" else 0] * len(numbers)
-    plain = column.texts().to_pylist()
-    out: list[tuple[Any, Any] | None] = []
-    for number, places, text in zip(numbers, digits, plain, strict=True):
-        if number == MISSING:
-            out.append(None)
-        elif len(text.replace(".", "").strip("-0")) > 15:
-            out.append((text, None))
-        elif column.kind == "amount":
-            out.append((number / 10**places, formats.amount(places)))
-        else:
-            out.append((float(text) if places else number, formats.decimal if places else formats.count))
-    return out
+        scale = 10.0**DECIMAL_PLACES if column.kind == "decimal" else 1.0
+        forms = [formats.decimal if column.kind == "decimal" else formats.count] * len(numbers)
+        values = numbers / scale
+    # a float of more than fifteen digits would show other digits than the number has
+    exact = (np.abs(numbers) < _EXACT) | np.array([text is not None and len(text.replace(".", "").strip("-0")) <= 15 for text in texts])
+    return [(value if good else text if there else None, form) for value, good, text, there, form in
+            zip(values.tolist(), (exact & known).tolist(), texts, known.tolist(), forms, strict=True)]  # fmt: skip
 
 
-def _day(day: datetime.date | None, formats: _Formats) -> tuple[Any, Any] | None:
-    if day is None:
-        return None
-    # the calendar of spreadsheets begins in 1900
-    return (day, formats.date) if day.year >= 1900 else (day.isoformat(), None)
+def _days(values: Any, texts: list[str | None], formats: _Formats) -> Iterable[tuple[Any, Any]]:
+    """Days as the numbers that spreadsheets count from the end of 1899; days before 1900 March are text, for there calendars differ."""
+    days = np.asarray(values, "datetime64[D]")
+    serial = (days - _DAY_ZERO).astype(np.int64)
+    counted = ~np.isnat(days) & (serial > 60)
+    return [(number if good else text, formats.date) for number, good, text in
+            zip(serial.tolist(), counted.tolist(), texts, strict=True)]  # fmt: skip
