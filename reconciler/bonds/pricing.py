@@ -1,21 +1,24 @@
 """Price and yield tell the same thing in two ways; which formula joins them is a market's habit.
 
 Conventions: `street` discounts by compound interest over coupon periods, with simple interest once only the last payment is left
-(SIA Standard Securities Calculation Methods, from memory); `treasury` uses simple interest in the broken first period and takes off accrued
-rounded to six decimals per 100 (31 CFR 356 Appendix B); `simple` is simple interest to maturity (the Japanese simple yield
-for coupon bonds, money-market yield for zeros); `annual` compounds yearly; `discount` is a rate off 100 for the days on the
-bond's basis; `investment` is the bill's coupon-equivalent rate of 31 CFR 356 Appendix B, quadratic beyond half a year.
+(SIA Standard Securities Calculation Methods, from memory; OpenFormula PRICE does likewise); `treasury` uses simple interest in the broken
+first period and takes off accrued rounded to six decimals per 100 (31 CFR 356 Appendix B); `simple` is simple interest to maturity
+(the Japanese simple yield for coupon bonds, money-market yield for zeros); `annual` compounds yearly; `discount` is a rate off
+100 for the days on the bond's basis; `investment` is the bill's coupon-equivalent rate of the same appendix, quadratic beyond
+half a year. The street yield of a zero is simple interest on the bond's basis where its market says so (bills), else compound.
 
-All figures are float64, per 100 of face, yields in percent. A yield that does not exist gives NaN, never an exception.
+All figures are float64, per 100 of face, yields in percent. A yield that does not exist gives NaN, never an exception; `discount` and
+`investment` do not exist for bonds with coupons. Only compound yields are searched for (Newton); the others have formulas.
 """
 
 from __future__ import annotations
 
+from dataclasses import dataclass
 from typing import Any
 
 import numpy as np
 
-from reconciler.bonds import flows
+from reconciler.bonds import compound, flows
 from reconciler.bonds.dates import leap_days_through
 from reconciler.bonds.daycounts import NUMBERS
 from reconciler.bonds.flows import Flows
@@ -26,141 +29,197 @@ Array = np.ndarray[Any, Any]
 YIELD_CONVENTIONS = ("street", "treasury", "simple", "annual", "discount", "investment")
 STREET, TREASURY, SIMPLE, ANNUAL, DISCOUNT, INVESTMENT = range(6)
 
-_STEP = 1e-5
-"""Half width in yield (a plain number) of the differences that durations are taken from."""
+_LAST_PERIOD, _NOTHING = 6, 7
+"""Formulas beside those of the conventions: the street's simple interest in the last period, and none."""
+
+_CHUNK = 65_536
 
 
-def _column(convention: Array | int, length: int) -> Array:
-    return np.broadcast_to(np.asarray(convention, np.int64), (length,))
+@dataclass(frozen=True)
+class _Asked:
+    """Some bonds on their settlement days with the formula that each convention comes down to."""
+
+    formula: Array
+    flows: Flows
+    basis: Array
+    year: Array
+    treasury: Array
+
+    @property
+    def taken_off(self) -> Array:
+        """Accrued interest between full and clean price."""
+        return np.where(self.treasury, np.round(self.flows.accrued, 6), self.flows.accrued)
 
 
-def _basis(terms: Terms, rows: Array) -> Array:
-    return np.where(terms.day_count[rows] == NUMBERS["Act/365F"], 365.0, 360.0)
-
-
-def full_price(terms: Terms, rows: Array, settle: Array, yields: Array, convention: Array | int, paid: Flows) -> Array:
-    """Price with accrued per 100 at each yield (a plain number, 0.05 for 5 %)."""
-    kind = _column(convention, len(rows))
-    days = (terms.maturity[rows] - np.asarray(settle, "datetime64[D]")).astype(np.float64)
-    redemption = terms.redemption_price_e12[rows] / 1e12
-    zero = terms.frequency[rows] == 0
-    with np.errstate(all="ignore"):
-        out = _compound(terms, rows, yields, kind, paid)
-        plain = zero & ((kind == SIMPLE) | ((kind == STREET) & ~flows.market_compounds(terms, rows)))
-        out = np.where(plain, redemption / (1 + yields * days / _basis(terms, rows)), out)
-        out = np.where(kind == DISCOUNT, redemption * (1 - yields * days / _basis(terms, rows)), out)
-        out = np.where(kind == INVESTMENT, _investment(yields, days, settle, redemption), out)
-        out = np.where((kind == SIMPLE) & ~zero, _simple(terms, rows, yields, redemption, paid), out)
-    return np.where(paid.sound, out, np.nan)
-
-
-def _compound(terms: Terms, rows: Array, yields: Array, kind: Array, paid: Flows) -> Array:
-    """Street, Treasury and annual yields: payments times discount factors, added up per row."""
-    owner, count = paid.owner, len(rows)
-    frequency = paid.frequency.astype(np.float64)
-    per_period = yields / frequency
-    log_growth = np.where(kind == ANNUAL, np.log1p(yields) / frequency, np.log1p(per_period))
-    treasury = kind == TREASURY
-    # the broken period counts as simple interest: for the Treasury always, on the street when it is the last one
-    last = (paid.coupons <= 1) & (terms.frequency[rows] > 0) & (kind == STREET)
-    final_time = np.zeros(count)
-    np.maximum.at(final_time, owner, paid.time)
-    last &= final_time <= 1
-    time = paid.time - np.where(treasury, paid.broken, 0.0)[owner]
-    value = paid.amount * np.exp(-time * log_growth[owner])
-    total = np.bincount(owner, weights=value, minlength=count)
-    total = np.where(treasury, total / (1 + paid.broken * per_period), total)
-    undiscounted = np.bincount(owner, weights=paid.amount, minlength=count)
-    return np.where(last, undiscounted / (1 + final_time * per_period), total)
+def _asked(terms: Terms, rows: Array, settle: Array, convention: Array) -> _Asked:
+    paid = flows.of(terms, rows, settle)
+    formula = np.array(convention, np.int64)
+    street = formula == STREET
+    formula[street & paid.simple] = SIMPLE
+    formula[street & paid.last_period] = _LAST_PERIOD
+    formula[((formula == DISCOUNT) | (formula == INVESTMENT)) & ~paid.zero | ~paid.sound] = _NOTHING
+    basis = np.where(terms.day_count[rows] == NUMBERS["Act/365F"], 365.0, 360.0)
+    return _Asked(formula, paid, basis, _days_in_year(settle), np.asarray(convention) == TREASURY)
 
 
 def _days_in_year(settle: Array) -> Array:
     """365, or 366 where a 29 February falls in the year that follows settlement (31 CFR 356 Appendix B)."""
-    day = np.asarray(settle, "datetime64[D]")
-    month = day.astype("datetime64[M]")
-    later = (month + 12).astype("datetime64[D]") + (day - month.astype("datetime64[D]"))
-    return 365.0 + (leap_days_through(later) > leap_days_through(day))
+    month = settle.astype("datetime64[M]")
+    later = (month + 12).astype("datetime64[D]") + (settle - month.astype("datetime64[D]"))
+    return 365.0 + (leap_days_through(later) > leap_days_through(settle))
 
 
-def _investment(yields: Array, days: Array, settle: Array, redemption: Array) -> Array:
-    year = _days_in_year(settle)
-    short = redemption / (1 + yields * days / year)
-    long = redemption / ((1 + (days - year / 2) * yields / year) * (1 + yields / 2))
-    return np.where(days > year / 2, long, short)
+def _full(asked: _Asked, yields: Array) -> tuple[Array, Array]:
+    """Price with accrued per 100 at each yield (a plain number, 0.05 for 5 %), and its slope; NaN where there is none."""
+    price, slope = np.full(len(yields), np.nan), np.full(len(yields), np.nan)
+    formula, paid = asked.formula, asked.flows
+    with np.errstate(all="ignore"):
+        for which, value in (
+            (SIMPLE, _simple), (DISCOUNT, _discount), (INVESTMENT, _investment), (_LAST_PERIOD, _last_period),
+        ):  # fmt: skip
+            some = np.flatnonzero(formula == which)
+            if len(some):
+                price[some], slope[some] = value(asked, some, yields[some])
+        some = np.flatnonzero((formula == STREET) | (formula == TREASURY) | (formula == ANNUAL))
+        if len(some):
+            price[some], slope[some] = compound.value(_compounded(asked, some), paid.frequency[some], yields[some])
+    return price, slope
 
 
-def _simple(terms: Terms, rows: Array, yields: Array, redemption: Array, paid: Flows) -> Array:
-    coupon = np.where(terms.rate_e9[rows] < 0, 0, terms.rate_e9[rows]) / 1e9
-    clean = (redemption + coupon * paid.years) / (1 + yields * paid.years)
-    return clean + paid.accrued
+def _yields(asked: _Asked, target: Array) -> Array:
+    """The yield (a plain number) whose full price is `target`; NaN where there is none."""
+    out = np.full(len(target), np.nan)
+    formula, paid = asked.formula, asked.flows
+    with np.errstate(all="ignore"):
+        for which, solved in (
+            (SIMPLE, _simple_yield), (DISCOUNT, _discount_yield), (INVESTMENT, _investment_yield), (_LAST_PERIOD, _last_yield),
+        ):  # fmt: skip
+            some = np.flatnonzero(formula == which)
+            if len(some):
+                out[some] = solved(asked, some, target[some])
+        some = np.flatnonzero((formula == STREET) | (formula == TREASURY) | (formula == ANNUAL))
+        if len(some):
+            out[some] = compound.solve(_compounded(asked, some), paid.frequency[some], target[some])
+    return np.where(np.isfinite(out) & (target > 0), out, np.nan)
 
 
-def _taken_off(kind: Array, paid: Flows) -> Array:
-    return np.where(kind == TREASURY, np.round(paid.accrued, 6), paid.accrued)
+def _compounded(asked: _Asked, some: Array) -> compound.Compounded:
+    return compound.of(asked.flows, some, asked.formula[some] == TREASURY, asked.formula[some] == ANNUAL)
+
+
+# --- the conventions with a formula: price and slope, and the yield back -------------------------------------------------------
+
+
+def _simple_terms(asked: _Asked, some: Array) -> tuple[Array, Array, Array]:
+    """What is paid in all, the years it takes, and the accrued that a coupon bond's clean price leaves out."""
+    paid = asked.flows
+    zero = paid.zero[some]
+    years = paid.days[some] / np.where(zero, asked.basis[some], 365.0)
+    total = paid.redemption[some] + np.where(zero, 0.0, paid.coupon_rate[some] * years)
+    return total, years, np.where(zero, 0.0, paid.accrued[some])
+
+
+def _simple(asked: _Asked, some: Array, yields: Array) -> tuple[Array, Array]:
+    total, years, accrued = _simple_terms(asked, some)
+    clean = total / (1 + yields * years)
+    return np.where(1 + yields * years > 0, clean + accrued, np.nan), -clean * years / (1 + yields * years)
+
+
+def _simple_yield(asked: _Asked, some: Array, target: Array) -> Array:
+    total, years, accrued = _simple_terms(asked, some)
+    return (total / (target - accrued) - 1) / years
+
+
+def _discount(asked: _Asked, some: Array, yields: Array) -> tuple[Array, Array]:
+    redemption, share = asked.flows.redemption[some], asked.flows.days[some] / asked.basis[some]
+    return redemption * (1 - yields * share), -redemption * share
+
+
+def _discount_yield(asked: _Asked, some: Array, target: Array) -> Array:
+    return (1 - target / asked.flows.redemption[some]) * asked.basis[some] / asked.flows.days[some]
+
+
+def _investment(asked: _Asked, some: Array, yields: Array) -> tuple[Array, Array]:
+    redemption, days, year = asked.flows.redemption[some], asked.flows.days[some], asked.year[some]
+    long = days > year / 2
+    # beyond half a year the rate compounds once: simple interest for half a year, and again for the days beyond it
+    share = np.where(long, days / year - 0.5, days / year)
+    one, half = 1 + yields * share, np.where(long, 1 + yields / 2, 1.0)
+    price = redemption / (one * half)
+    return price, -price * (share / one + np.where(long, 0.5 / half, 0.0))
+
+
+def _investment_yield(asked: _Asked, some: Array, target: Array) -> Array:
+    redemption, days, year = asked.flows.redemption[some], asked.flows.days[some], asked.year[some]
+    linear, long = days / year, days > year / 2
+    square = np.where(long, linear / 2 - 0.25, 0.0)
+    gain = redemption / target - 1
+    # the root of square x^2 + linear x = gain that stays right when the square vanishes
+    return 2 * gain / (linear + np.sqrt(linear * linear + 4 * square * gain))
+
+
+def _last_period(asked: _Asked, some: Array, yields: Array) -> tuple[Array, Array]:
+    paid = asked.flows
+    total, share = paid.first[some] + paid.last[some], paid.last_time[some] / paid.frequency[some]
+    price = total / (1 + share * yields)
+    return np.where(1 + share * yields > 0, price, np.nan), -price * share / (1 + share * yields)
+
+
+def _last_yield(asked: _Asked, some: Array, target: Array) -> Array:
+    paid = asked.flows
+    return ((paid.first[some] + paid.last[some]) / target - 1) * paid.frequency[some] / paid.last_time[some]
+
+
+# --- what others ask -----------------------------------------------------------------------------------------------------------
+
+
+def _columns(rows: Array, settle: Array, convention: Array | int) -> tuple[Array, Array, Array]:
+    rows = np.asarray(rows)
+    return rows, np.asarray(settle, "datetime64[D]"), np.broadcast_to(np.asarray(convention, np.int64), rows.shape)
+
+
+def _stretches(length: int) -> list[slice]:
+    return [slice(first, first + _CHUNK) for first in range(0, length, _CHUNK)]
 
 
 def price_from_yield(
     terms: Terms, rows: Array, settle: Array, yield_pct: Array, convention: Array | int = STREET
 ) -> Array:
     """Clean price per 100 of each bond at each yield in percent; NaN where there is none."""
-    rows, settle = np.asarray(rows), np.asarray(settle, "datetime64[D]")
-    paid = flows.of(terms, rows, settle)
-    kind = _column(convention, len(rows))
-    return full_price(terms, rows, settle, np.asarray(yield_pct) / 100, kind, paid) - _taken_off(kind, paid)
+    rows, settle, kind = _columns(rows, settle, convention)
+    at, out = np.asarray(yield_pct, np.float64) / 100, np.empty(len(rows))
+    for s in _stretches(len(rows)):
+        asked = _asked(terms, rows[s], settle[s], kind[s])
+        out[s] = _full(asked, at[s])[0] - asked.taken_off
+    return out
 
 
-def yield_from_price(
-    terms: Terms, rows: Array, settle: Array, clean: Array, convention: Array | int = STREET
-) -> Array:
-    """Yield in percent of each bond at each clean price per 100; NaN where no yield between -99 % and 1,000 % gives it."""
-    rows, settle = np.asarray(rows), np.asarray(settle, "datetime64[D]")
-    paid = flows.of(terms, rows, settle)
-    kind = _column(convention, len(rows))
-    target = np.asarray(clean, np.float64) + _taken_off(kind, paid)
-    return solve(terms, rows, settle, kind, paid, target) * 100
-
-
-def solve(terms: Terms, rows: Array, settle: Array, kind: Array, paid: Flows, target: Array) -> Array:
-    """The yield (a plain number) whose full price is `target`: Newton on the price, kept inside a bracket that closes."""
-    low, high = np.full(len(rows), -0.99), np.full(len(rows), 10.0)
-    guess = np.full(len(rows), 0.05)
-    with np.errstate(all="ignore"):
-        for _ in range(100):
-            here = full_price(terms, rows, settle, guess, kind, paid)
-            over = here > target
-            low, high = np.where(over, guess, low), np.where(over, high, guess)
-            slope = (full_price(terms, rows, settle, guess + 1e-7, kind, paid) - here) / 1e-7
-            step = guess - (here - target) / slope
-            inside = np.isfinite(step) & (step > low) & (step < high)
-            following = np.where(inside, step, (low + high) / 2)
-            moved = np.abs(following - guess)
-            guess = np.where(here == target, guess, following)
-            if not (moved[paid.sound & np.isfinite(target)] > 1e-15).any():
-                break
-        reached = np.abs(full_price(terms, rows, settle, guess, kind, paid) - target) < 1e-8 * np.maximum(target, 1)
-    return np.where(reached & paid.sound, guess, np.nan)
+def yield_from_price(terms: Terms, rows: Array, settle: Array, clean: Array, convention: Array | int = STREET) -> Array:
+    """Yield in percent of each bond at each clean price per 100; NaN where no yield (compound: above -99 %) gives it."""
+    rows, settle, kind = _columns(rows, settle, convention)
+    clean, out = np.asarray(clean, np.float64), np.empty(len(rows))
+    for s in _stretches(len(rows)):
+        asked = _asked(terms, rows[s], settle[s], kind[s])
+        out[s] = _yields(asked, clean[s] + asked.taken_off) * 100
+    return out
 
 
 def risk(
     terms: Terms, rows: Array, settle: Array, yield_pct: Array, convention: Array | int = STREET
 ) -> tuple[Array, Array]:
     """Modified duration in years and what one basis point moves, both of the price with accrued, per 100 of face."""
-    rows, settle = np.asarray(rows), np.asarray(settle, "datetime64[D]")
-    paid = flows.of(terms, rows, settle)
-    kind, at = _column(convention, len(rows)), np.asarray(yield_pct, np.float64) / 100
-    here = full_price(terms, rows, settle, at, kind, paid)
-    down = full_price(terms, rows, settle, at - _STEP, kind, paid)
-    up = full_price(terms, rows, settle, at + _STEP, kind, paid)
-    with np.errstate(all="ignore"):
-        slope = (down - up) / (2 * _STEP)
-        return slope / here, slope / 10_000
+    rows, settle, kind = _columns(rows, settle, convention)
+    at, duration, point = np.asarray(yield_pct, np.float64) / 100, np.empty(len(rows)), np.empty(len(rows))
+    for s in _stretches(len(rows)):
+        price, slope = _full(_asked(terms, rows[s], settle[s], kind[s]), at[s])
+        duration[s], point[s] = -slope / price, -slope / 10_000
+    return duration, point
 
 
-def dirty_at(
-    terms: Terms, rows: Array, settle: Array, yield_pct: Array, convention: Array | int = STREET
-) -> Array:
-    """Price with accrued per 100 at each yield in percent, for revaluing a position."""
-    rows, settle = np.asarray(rows), np.asarray(settle, "datetime64[D]")
-    paid = flows.of(terms, rows, settle)
-    kind = _column(convention, len(rows))
-    return full_price(terms, rows, settle, np.asarray(yield_pct, np.float64) / 100, kind, paid)
+def dirty_at(terms: Terms, rows: Array, settle: Array, yield_pct: Array, convention: Array | int = STREET) -> Array:
+    """Price with accrued per 100 at each yield in percent, for revaluing a position; NaN where there is none."""
+    rows, settle, kind = _columns(rows, settle, convention)
+    at, out = np.asarray(yield_pct, np.float64) / 100, np.empty(len(rows))
+    for s in _stretches(len(rows)):
+        out[s] = _full(_asked(terms, rows[s], settle[s], kind[s]), at[s])[0]
+    return out

@@ -206,9 +206,9 @@ def _chunk(read: _Cells, asked: _Asked, rows: np.ndarray) -> tuple[np.ndarray, .
     yields = np.where(yielding, given, pricing.yield_from_price(terms, rows, settle, from_price, convention))
     _say(read, rows[yielding & ~np.isfinite(clean)], "yield", "gives no price under this convention; correct the yield.")
     lost = ~yielding & settled.sound & ~np.isfinite(yields)
-    name = "no yield between -99 % and 1,000 % gives this price; correct the price."
-    _say(read, rows[lost & ~discounted], "price", name)
-    _say(read, rows[lost & discounted], "discount", name)
+    reason = "gives no yield; correct it."
+    _say(read, rows[lost & ~discounted], "price", reason)
+    _say(read, rows[lost & discounted], "discount", reason)
     duration, point = pricing.risk(terms, rows, settle, yields, convention)
     scale = asked.face[rows] / (100.0 * 10.0 ** terms.currency_digits[rows]) * accrual.factors(terms, rows, settle) / ONE
     price = np.where(discounted, half_up(*_ratio(quoted, rows, settle, told, ONE)), _e12(clean))
