@@ -29,6 +29,7 @@ from reconciler.matching import trades as trade_matching
 from reconciler.problems import KnownError, Problem
 from reconciler.procedures import disputes
 from reconciler.procedures import totals as totals_of
+from reconciler.procedures.strangers import strangers
 from reconciler.records import BREAK_KINDS, STATES, Table, Words, concat, unify
 from reconciler.settings import Settings
 from reconciler.texts import long_date
@@ -81,6 +82,7 @@ class State:
     source: Any = None
     terms: Any = None
     term_problems: tuple[Problem, ...] = ()
+    strangers: tuple[Problem, ...] = ()
     pairs: Any = None
     trades: Any = None
     payments: Any = None
@@ -103,7 +105,8 @@ def resolve(state: State) -> State:
     source = state.source
     terms, problems = resolve_terms(source.bonds, source.rates, source.factors, source.closings)
     # a bond whose rows were rejected stands without terms and without a line; what is wrong with it was told with the row
-    return replace(state, terms=terms, term_problems=tuple(problem for problem in problems if problem.line > 0))
+    told = tuple(problem for problem in problems if problem.line > 0)
+    return replace(state, terms=terms, term_problems=told, strangers=strangers(source))
 
 
 def pair_trades(state: State) -> State:
@@ -261,7 +264,7 @@ def run(
 
 def _day(state: State) -> Day:
     """The outcome, items in the order of their names."""
-    problems = tuple(sorted({*state.source.problems, *state.term_problems}))
+    problems = tuple(sorted({*state.source.problems, *state.term_problems, *state.strangers}))
     source = replace(state.source, problems=problems)
     order = np.argsort(state.items["item"].rank(), kind="stable")
     place = np.empty(len(order), np.int64)
