@@ -64,3 +64,9 @@ def grid_after(terms: Terms, rows: Array, dates: Array) -> Array:
     """The first grid date after each day."""
     grid = Grid(terms, rows)
     return grid.at(grid.number_at_or_before(dates) - 1)
+
+
+def grid_before(terms: Terms, rows: Array, dates: Array) -> Array:
+    """The last grid date before each day."""
+    grid = Grid(terms, rows)
+    return grid.at(grid.number_at_or_before(dates - 1))

@@ -110,7 +110,7 @@ def periods_accruing(terms: Terms, rows: Array, dates: Array) -> Periods:
         return found
     # On or after maturity nothing accrues, so a last period that was moved is left as it is.
     late = (dates >= found.accrual_end) & (found.end < terms.maturity[rows])
-    early = (dates < found.accrual_start) & (found.start > terms.accrual_start[rows])
+    early = (dates < found.accrual_start) & ~(found.start <= terms.accrual_start[rows])
     moved = np.flatnonzero(terms.accrual_adjusted[rows] & (late | early))
     if len(moved):
         inside = np.where(late[moved], found.end[moved], found.start[moved] - 1)
@@ -195,10 +195,10 @@ def coupons_between(terms: Terms, rows: Array, first: Any, last: Any) -> Coupons
 
 
 def all_coupons(terms: Terms, rows: Array) -> Coupons:
-    """The full schedules of the bonds at `rows`; without an accrual start (or first coupon), from one period before maturity's year back to 1970."""
+    """The full schedules of the bonds at `rows`; without an accrual start or first coupon from 1970 on, where the calendars begin."""
     rows = np.asarray(rows)
     rows = rows[(terms.frequency[rows] > 0) & terms.sound[rows]]
-    begin = np.where(np.isnat(terms.accrual_start[rows]), terms.told_first_coupon[rows] - 1, terms.accrual_start[rows])
+    begin = terms.accrual_start[rows]
     begin = np.where(np.isnat(begin), np.datetime64("1970-01-01"), begin)
     places, dates = coupon_dates(terms, rows, begin + 1, terms.maturity[rows])
     found_rows = rows[places]

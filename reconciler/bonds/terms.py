@@ -24,7 +24,7 @@ from reconciler.bonds import markets
 from reconciler.bonds.calendars import ADJUSTMENTS, Calendars
 from reconciler.bonds.dates import civil
 from reconciler.bonds.daycounts import NUMBERS
-from reconciler.bonds.grid import grid_after
+from reconciler.bonds.grid import grid_after, grid_before
 from reconciler.money import MISSING, known_currency, minor_digits
 
 Array = np.ndarray[Any, Any]
@@ -52,8 +52,9 @@ class Terms:
     frequency: Array
     day_count: Array
     accrual_start: Array
+    """Where interest begins; where only a first coupon is told, the grid date before it."""
     first_coupon: Array
-    """The first coupon date, worked out where not told; NaT for zeros and where the accrual start is not known."""
+    """The first coupon date, worked out where not told; NaT for zeros and where neither date is told."""
     told_first_coupon: Array
     last_regular_coupon: Array
     maturity: Array
@@ -293,9 +294,10 @@ def _check_dates(columns: _Columns, dates: Mapping[str, Array]) -> None:
         ("first_coupon", "maturity", "lies before the first coupon; one of the two dates is wrong."),
         ("last_regular_coupon", "maturity", "lies before the last regular coupon; one of the two dates is wrong."),
         ("accrual_start", "first_coupon", "lies on or before the accrual start; one of the two dates is wrong."),
+        ("accrual_start", "last_regular_coupon", "lies before the accrual start; one of the two dates is wrong."),
         ("first_coupon", "last_regular_coupon", "lies before the first coupon; one of the two dates is wrong."),
     ):
-        strict = first == "accrual_start"
+        strict = first == "accrual_start" and second != "last_regular_coupon"
         bad = dates[second] <= dates[first] if strict else dates[second] < dates[first]
         if bad.any():
             rows = np.flatnonzero(bad)
@@ -359,15 +361,18 @@ def _grouped(rows: tuple[Array, Array, Array], length: int) -> tuple[Array, Arra
 
 
 def _with_first_coupons(terms: Terms) -> Terms:
-
-    pays = (terms.frequency > 0) & ~np.isnat(terms.accrual_start) & ~np.isnat(terms.maturity)
-    found = np.full(len(terms), NAT)
-    rows = np.flatnonzero(pays & np.isnat(terms.told_first_coupon))
-    if len(rows):
-        following = grid_after(terms, rows, terms.accrual_start[rows])
-        found[rows] = np.minimum(following, terms.maturity[rows])
-    first = np.where(np.isnat(terms.told_first_coupon), found, terms.told_first_coupon)
-    return replace(terms, first_coupon=first)
+    """Terms with what told dates leave open: the first coupon, or where interest begins before a told first coupon."""
+    begin, told = terms.accrual_start, terms.told_first_coupon
+    pays = (terms.frequency > 0) & ~np.isnat(terms.maturity)
+    first = told.copy()
+    rows = np.flatnonzero(pays & ~np.isnat(begin) & np.isnat(told))
+    following = np.minimum(grid_after(terms, rows, begin[rows]), terms.maturity[rows])
+    # interest that begins with or after the last regular coupon has one odd period, however long
+    first[rows] = np.where(begin[rows] >= terms.anchor[rows], terms.maturity[rows], following)
+    rows = np.flatnonzero(pays & np.isnat(begin) & ~np.isnat(told))
+    begin = begin.copy()
+    begin[rows] = grid_before(terms, rows, told[rows])
+    return replace(terms, first_coupon=first, accrual_start=begin)
 
 
 def in_force(offsets: Array, starts: Array, values: Array, rows: Array, dates: Array, before: Array) -> Array:
