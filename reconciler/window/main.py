@@ -166,6 +166,7 @@ class MainWindow(QMainWindow):
         self.sidebar.show_day(day.date, "\n".join(part for part in foot if part))
         self.setWindowTitle(f"{figures.long_date(day.date)} – {recent.NAME}")
         if loaded.folder is not None:
+            self._wanted = (loaded.folder, day.date)
             recent.remember(recent.settings(), loaded.folder, figures.iso(day.date))
         self._say_problems()
         self._enable()

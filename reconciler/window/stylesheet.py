@@ -45,6 +45,8 @@ QLineEdit, QComboBox, QAbstractSpinBox, QPlainTextEdit {
 QLineEdit:focus, QComboBox:focus, QAbstractSpinBox:focus, QPlainTextEdit:focus { border: 2px solid @accent; padding: 4px 9px; }
 QLineEdit#search { border-radius: 16px; padding: 5px 14px; }
 QLineEdit#search:focus { padding: 4px 13px; }
+QAbstractSpinBox::up-button, QAbstractSpinBox::down-button { width: 0; border: none; }
+QAbstractSpinBox QLineEdit { border: none; padding: 0 10px; background: transparent; min-height: 0; }
 QComboBox::drop-down { border: none; width: 26px; }
 QComboBox::down-arrow { image: url("@icons/down.svg"); width: 14px; height: 14px; }
 QComboBox QAbstractItemView { background: @surface; border: 1px solid @outline; selection-background-color: @wash;

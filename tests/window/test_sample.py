@@ -13,7 +13,7 @@ from PySide6.QtGui import QDropEvent
 from pytestqt.qtbot import QtBot
 
 from reconciler.window import jobs, recent
-from reconciler.window.loading import date_of_folder, sample_mornings
+from reconciler.window.loading import Loaded, date_of_folder, load, sample_mornings
 from reconciler.window.main import MainWindow
 from reconciler.window.theme import theme
 
@@ -32,6 +32,14 @@ def window(qtbot: QtBot) -> Iterator[MainWindow]:
     jobs.stop_all()
 
 
+@pytest.fixture(scope="module")
+def sample() -> Loaded:
+    """The sample morning, read once for the tests that only look at it."""
+    day = date_of_folder(MORNING)
+    assert day is not None
+    return load(MORNING, day, lambda *_told: None)
+
+
 def _load(window: MainWindow, folder: Path) -> None:
     day = date_of_folder(folder)
     assert day is not None
@@ -48,8 +56,8 @@ def test_the_start_shows_the_sample_and_remembers_it(qtbot: QtBot, window: MainW
     assert recent.mornings(recent.settings())[0] == (sample_mornings()[-1], date_of_folder(sample_mornings()[-1]))
 
 
-def test_the_counts_are_those_of_the_morning(window: MainWindow) -> None:
-    _load(window, MORNING)
+def test_the_counts_are_those_of_the_morning(window: MainWindow, sample: Loaded) -> None:
+    window.show_loaded(sample)
     day = window.loaded.day
     assert window.sidebar.buttons["breaks"].count == f"{len(day.breaks):,}"
     shown = sum(window.pages[key].sheet.length for key in ("breaks", "due", "agreed"))
@@ -57,8 +65,8 @@ def test_the_counts_are_those_of_the_morning(window: MainWindow) -> None:
     assert window.pages["files"].header.subtitle.accessibleName().endswith("every row accounted for")
 
 
-def test_every_payment_can_be_looked_into(window: MainWindow) -> None:
-    _load(window, MORNING)
+def test_every_payment_can_be_looked_into(window: MainWindow, sample: Loaded) -> None:
+    window.show_loaded(sample)
     for key in ("breaks", "due"):
         window.show_page(key)
         page = window.page
@@ -73,8 +81,8 @@ def test_every_payment_can_be_looked_into(window: MainWindow) -> None:
                     assert page.detail.working.model().rowCount() > 0
 
 
-def test_the_working_adds_up_and_marks_who_differs(window: MainWindow) -> None:
-    _load(window, MORNING)
+def test_the_working_adds_up_and_marks_who_differs(window: MainWindow, sample: Loaded) -> None:
+    window.show_loaded(sample)
     page = window.pages["breaks"]
     page.show_tab("working")
     seen = 0
@@ -92,8 +100,8 @@ def test_the_working_adds_up_and_marks_who_differs(window: MainWindow) -> None:
     assert seen > 5
 
 
-def test_bonds_show_their_coupons(window: MainWindow) -> None:
-    _load(window, MORNING)
+def test_bonds_show_their_coupons(window: MainWindow, sample: Loaded) -> None:
+    window.show_loaded(sample)
     window.show_page("bonds")
     page = window.page
     coupons = 0

@@ -32,7 +32,6 @@ class OpenMorning(Dialog):
         self.browse = button("Browse …", "", "Choose the folder")
         self.day = QDateEdit()
         self.day.setDisplayFormat("d MMMM yyyy")
-        self.day.setButtonSymbols(QDateEdit.ButtonSymbols.NoButtons)
         self.day.setAccessibleName("Day of the morning")
         self.day.setToolTip("Payments before this day that have no cash are breaks; those on it are due")
         self.day.setDate(QDate.currentDate())

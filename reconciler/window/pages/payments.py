@@ -42,9 +42,9 @@ class PaymentsPage(Page):
         agree = counts["agrees"] + counts["within tolerance"]
         every = sum(counts.values())
         if self.key == "breaks":
+            on = f"on {figures.count(sheet.length, 'payment')} of {every:,}" if breaks else figures.count(every, "payment")
             self.header.say(figures.count(breaks, "break") if breaks else "No breaks",
-                            f"on {figures.count(sheet.length, 'payment')} of {every:,}  ·  {agree:,} agree  ·  "
-                            f"{counts['due']:,} due today")  # fmt: skip
+                            f"{on}  ·  {agree:,} agree  ·  {counts['due']:,} due today")  # fmt: skip
             self.header.show_net(loaded.overview.net)
         elif self.key == "due":
             self.header.say(f"{counts['due']:,} due today", "nobody disputes them; their cash is not booked yet")

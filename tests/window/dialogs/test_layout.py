@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import datetime
 import shutil
 from collections.abc import Iterator
 from pathlib import Path
@@ -12,7 +13,7 @@ from pytestqt.qtbot import QtBot
 
 from reconciler.window import jobs
 from reconciler.window.dialogs.layout import AssignColumns
-from reconciler.window.loading import date_of_folder, sample_mornings
+from reconciler.window.loading import Loaded, load, sample_mornings
 from reconciler.window.main import MainWindow
 from reconciler.window.theme import theme
 
@@ -25,23 +26,26 @@ FACTS = {"R1": "broker_reference", "R2": "desk_reference", "R3": "bond", "R4": "
          "R13": "currency", "R14": "account", "R15": "yield", "R16": "status"}  # fmt: skip
 
 
-@pytest.fixture()
-def window(qtbot: QtBot, tmp_path: Path) -> Iterator[MainWindow]:
-    """A window on a morning in which one broker's headings are not known."""
-    folder = tmp_path / "2026-03-31"
+@pytest.fixture(scope="module")
+def loaded(tmp_path_factory: pytest.TempPathFactory) -> Loaded:
+    """A morning in which one broker's headings are not known."""
+    folder = tmp_path_factory.mktemp("house") / "2026-03-31"
     shutil.copytree(sample_mornings()[1], folder)
     path = folder / "confirmations" / FILE
     head, *rows = path.read_text(encoding="utf-8").splitlines()
     told = ",".join(HEADS[name] for name in head.split(","))
     path.write_text("\n".join([told, *(row.replace(",Buy,", ",HERE,") for row in rows)]) + "\n", encoding="utf-8")
+    return load(folder, datetime.date(2026, 3, 31), lambda *_told: None)
+
+
+@pytest.fixture()
+def window(qtbot: QtBot, loaded: Loaded) -> Iterator[MainWindow]:
+    """A window that shows that morning."""
     theme().start("light")
     made = MainWindow()
     qtbot.addWidget(made)
     made.show()
-    day = date_of_folder(folder)
-    assert day is not None
-    made.load(folder, day)
-    assert jobs.wait_idle(60_000)
+    made.show_loaded(loaded)
     yield made
     jobs.stop_all()
 
