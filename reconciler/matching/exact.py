@@ -140,7 +140,7 @@ def _busy(board: Board, payments: Array, entries: Array, a: Array, b: Array) -> 
 
 
 def _rivals(board: Board, payments: Array, entries: Array) -> tuple[Array, Array]:
-    """Pairs of one account, currency, bond, direction and near days, whatever their amounts."""
+    """Pairs of one account, currency, bond, direction, kind (if spoken of) and near days, whatever their amounts."""
     left, right = (
         keys.mixed(getattr(board, f"{side}_{n}")[rows] for n in ("account", "currency", "bond"))
         for side, rows in (("i", payments), ("e", entries))
@@ -149,6 +149,7 @@ def _rivals(board: Board, payments: Array, entries: Array) -> tuple[Array, Array
     payments, entries = payments[a], entries[b]
     days = board.days_late(payments, entries)
     keep = (days >= -5) & (days <= 10) & (np.sign(board.i_expected[payments]) == np.sign(board.e_amount[entries]))
+    keep &= board.kinds_agree(payments, entries)
     return payments[keep], entries[keep]
 
 
