@@ -25,7 +25,7 @@ Array = np.ndarray[Any, Any]
 
 # One number must not stand for more payments than a person could net in one entry.
 _MOST = 64
-_PUNCTUATION = ".,;:()[]{}<>\"'#!?*="
+_PUNCTUATION = ".,;:()[]{}<>\"'#!?*=/"
 # Signs that join names, and those that join names or stand inside one (26/00133;26/00190).
 _INNER = (r"[+;,:=|&]", r"[/+;,:=|&]")
 
