@@ -6,9 +6,14 @@ from typing import Any
 
 import numpy as np
 
-from reconciler.matching.cash import pair_cash
+from reconciler.matching.cash import pair_cash, with_bank
 from reconciler.matching.trades import TradePairs, pair_trades
 from reconciler.records import CASH, CONFIRMATIONS, ITEMS, TICKETS, Table, table
+
+Change = dict[str, Any]
+BOND, OTHER = "ZZ0000000017", "ZZ0000000025"
+E = -99_912_345
+"""What the usual trade settles for on our account."""
 
 DEAL: dict[str, Any] = {
     "trade_date": "2026-03-24", "settlement_date": "2026-03-26", "bond": "ZZ0000000017", "side": 1, "face_minor": 100_000_000,
@@ -96,3 +101,14 @@ def paid(items: Table, cash: Table, **more: Any) -> dict[str, dict[str, int]]:
 def who(items: Table, cash: Table, **more: Any) -> dict[str, list[str]]:
     """Per entry that pays: the items, in order."""
     return {entry: sorted(shares) for entry, shares in paid(items, cash, **more).items()}
+
+
+def booked(items: Table, cash: Table, **more: Any) -> Table:
+    """The items with what the bank told."""
+    return with_bank(items, cash, pair_cash(items, cash, **more))[0]
+
+
+def told_twice(items: Table, cash: Table) -> set[tuple[str, str]]:
+    """(what repeats, what it repeats), by the names of the entries."""
+    found = pair_cash(items, cash).repeats
+    return {(cash["entry"].text(a), cash["entry"].text(b)) for a, b in zip(found["row"], found["of_row"], strict=True)}
