@@ -16,7 +16,7 @@ import numpy as np
 
 from reconciler.bonds import daycounts, schedules
 from reconciler.bonds.schedules import Periods
-from reconciler.bonds.terms import NAT, ONE, Terms, in_force
+from reconciler.bonds.terms import AMORTISING, LINKED, NAT, ONE, Terms, in_force
 from reconciler.money import MISSING, down, half_up
 
 Array = np.ndarray[Any, Any]
@@ -187,7 +187,7 @@ def _any_coupon(terms: Terms, rows: Array, unadjusted: Array, face_minor: Array)
     periods = schedules.period_ending(terms, rows, unadjusted)
     above, below = coupon_fraction(terms, rows, periods)
     rate = _rates(terms, rows, _fixed_on(periods))
-    at = np.where(terms.kind[rows] == 4, unadjusted, periods.start)
+    at = np.where(terms.kind[rows] == LINKED, unadjusted, periods.start)
     factor = factors(terms, rows, at)
     known = terms.sound[rows] & (rate != MISSING) & ~np.isnat(periods.start)
     minor = half_up([face_minor, np.where(known, rate, 0), above], [RATE, np.where(below > 0, below, 1)])
@@ -201,7 +201,7 @@ def redemption_amounts(terms: Terms, rows: Array, face_minor: Array) -> Array:
     """What each bond pays back at maturity on a face: the remaining factor, or the index ratio (at least par where the market says so)."""
     rows = np.asarray(rows)
     maturity = terms.maturity[rows]
-    amortising = terms.kind[rows] == 5
+    amortising = terms.kind[rows] == AMORTISING
     # a last step of the factor on the maturity date itself is what maturity pays
     factor = factors(terms, rows, np.where(amortising, maturity - 1, maturity))
     factor = np.where(terms.floor_at_par[rows], np.maximum(factor, ONE), factor)
@@ -232,7 +232,7 @@ def partial_redemptions(terms: Terms, rows: Array, first: np.datetime64, last: n
     opens[terms.factor_offsets[:-1][np.diff(terms.factor_offsets) > 0]] = True
     before = np.where(opens, ONE, np.roll(terms.factor_e12s, 1)) if len(owner) else terms.factor_e12s
     drop = before - terms.factor_e12s
-    keep = wanted[owner] & (terms.kind[owner] == 5) & (drop > 0) & (starts < terms.maturity[owner]) & terms.sound[owner]
+    keep = wanted[owner] & (terms.kind[owner] == AMORTISING) & (drop > 0) & (starts < terms.maturity[owner]) & terms.sound[owner]
     owner, starts, drop = owner[keep], starts[keep], drop[keep]
     paid = schedules.payment_dates(terms, owner, starts)
     inside = (paid >= first) & (paid <= last)

@@ -7,7 +7,8 @@ from typing import Any
 import numpy as np
 
 from reconciler.bonds import calendars
-from reconciler.bonds.terms import Terms, calendar_codes, resolve
+from reconciler.bonds.resolving import calendar_codes, resolve
+from reconciler.bonds.terms import Terms
 from reconciler.problems import Problem
 from reconciler.records import Table, Words
 

@@ -15,7 +15,8 @@ import pyarrow as pa
 
 from reconciler import texts
 from reconciler.bonds import accrual, calendars, pricing, settlement
-from reconciler.bonds.terms import NAT, ONE, QUOTES, Terms, calendar_codes, resolve
+from reconciler.bonds.resolving import calendar_codes, resolve
+from reconciler.bonds.terms import NAT, ONE, QUOTES, Terms
 from reconciler.exports.columns import Column
 from reconciler.intake import cells
 from reconciler.money import MISSING, half_up

@@ -10,7 +10,9 @@ from typing import Any
 import numpy as np
 
 from reconciler.bonds import calendars
-from reconciler.bonds.terms import Fault, Terms, calendar_codes, resolve
+from reconciler.bonds.resolving import calendar_codes, resolve
+from reconciler.bonds.terms import Terms
+from reconciler.bonds.told import Fault
 from reconciler.money import MISSING
 
 TEXTS = (
