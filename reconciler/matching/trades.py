@@ -17,11 +17,11 @@ from typing import Any
 import numpy as np
 
 from reconciler.matching import keys
-from reconciler.matching.facts import DEALT, Facts, facts_of
+from reconciler.matching.facts import DEALT, TOLD, Facts, facts_of
 from reconciler.matching.keys import NO_PAIRS, Order, Pairs, content_order
 from reconciler.matching.repeats import in_force, repeated_confirmations, repeated_tickets
 from reconciler.matching.similar import similar_words
-from reconciler.records import MISSING, STATUSES, Table, Words
+from reconciler.records import MISSING, STATUSES, Table, Words, unify
 
 Array = np.ndarray[Any, Any]
 
@@ -75,14 +75,23 @@ class _Pairing:
         return np.flatnonzero(allowed & (self.of_ticket < 0)), np.flatnonzero(self.given & (self.of_confirmation < 0))
 
     def set_repeats_aside(self) -> None:
-        """Confirmations that tell the broker and reference of a paired one repeat it: they answer no other, unlike ticket."""
-        told = self.given & self.confirmations["broker_reference"].known()
-        key = keys.mixed((keys.whole(self.confirmations["broker"]), keys.whole(self.confirmations["broker_reference"])))
-        open_rows = np.flatnonzero(told & (self.of_confirmation < 0))
-        paired = np.flatnonzero(told & (self.of_confirmation >= 0))
-        if len(open_rows) and len(paired):
-            self.given = self.given.copy()
-            self.given[open_rows[keys.occurs(key[open_rows], key[paired])]] = False
+        """Confirmations that repeat a paired one answer no other, unlike ticket.
+
+        They tell its broker and reference, or name its ticket and tell the same facts under a new reference.
+        """
+        numbers, named = unify(self.tickets["ticket"], self.confirmations["desk_reference"])
+        number = np.where(self.of_confirmation < 0, keys.whole(named), keys.whole(numbers.take(self.of_confirmation)))
+        reference = keys.whole(self.confirmations["broker_reference"])
+        for told, columns in (
+            (reference, (keys.whole(self.confirmations["broker"]), reference)),
+            (number, (number, *(self.facts.broker[name] for name in TOLD))),
+        ):
+            key, known = keys.mixed(columns), self.given & (told != MISSING)
+            open_rows = np.flatnonzero(known & (self.of_confirmation < 0))
+            paired = np.flatnonzero(known & (self.of_confirmation >= 0))
+            if len(open_rows) and len(paired):
+                self.given = self.given.copy()
+                self.given[open_rows[keys.occurs(key[open_rows], key[paired])]] = False
 
     def take(self, pairs: Pairs) -> None:
         """Keeps the pairs (rows of the tables)."""
