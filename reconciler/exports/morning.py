@@ -60,13 +60,13 @@ Told = tuple[Words, Array]
 
 
 def write_items(path: Path, items: Table, told: Mapping[str, Told]) -> None:
-    """Writes items.csv. `told` gives the currencies that broker and desk told, for the digits of their amounts."""
+    """Writes items.csv. `told` gives the currencies that broker, desk and bank told, for the digits of their amounts."""
     order = np.argsort(items["item"].rank(), kind="stable")
     if not np.array_equal(order, np.arange(len(order))):
         items, told = items.take(order), {name: (words, rows[order]) for name, (words, rows) in told.items()}
     own = _digits(items["currency"])
     digits = {column: _digits_told(told[party], own) for party, column in
-              (("Broker", "broker_minor"), ("Desk", "desk_minor")) if party in told}  # fmt: skip
+              (("Broker", "broker_minor"), ("Desk", "desk_minor"), ("Bank", "bank_minor")) if party in told}  # fmt: skip
     csv.write(path, _columns(items, ITEMS, own, digits))
 
 

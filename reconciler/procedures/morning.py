@@ -243,11 +243,13 @@ def run(
     progress: Progress | None = None,
     cancelled: Callable[[], bool] | None = None,
     layouts: tuple[Path, ...] = (),
+    meanwhile: Callable[[Day], None] | None = None,
 ) -> Day:
     """Reconciles a folder as of a date.
 
     Coupons and redemptions are expected from `since` (default: so many weekdays before `date` as the settings say). `layouts` are
-    folders of layouts beside the morning's own and the shipped ones. Raises KnownError when nothing can be reconciled.
+    folders of layouts beside the morning's own and the shipped ones. `meanwhile` is given the day as it stands before causes are
+    searched for (its `explanations` are None), so that it can be looked at already. Raises KnownError when nothing can be reconciled.
     """
     told = settings or Settings()
     today = np.datetime64(date, "D")
@@ -258,6 +260,8 @@ def run(
             raise Stopped
         if progress is not None:
             progress(str(step.__doc__), number, len(STEPS))
+        if step is name_causes and meanwhile is not None:
+            meanwhile(_day(state))
         state = step(state)
     return _day(state)
 
@@ -288,8 +292,13 @@ def write(day: Day, out: Path) -> None:
         out.mkdir(parents=True, exist_ok=True)
     except OSError as fault:
         raise KnownError(f"The folder {out} cannot be made: {fault.strerror or fault}.") from fault
-    told = {"Broker": (day.source.confirmations["currency"], day.items["confirmation_row"]),
-            "Desk": (day.source.tickets["currency"], day.items["ticket_row"])}  # fmt: skip
+    entry_row = np.full(len(day.items), -1, np.int64)
+    entry_row[day.allocations["item_row"]] = day.allocations["cash_row"]
+    told = {
+        "Broker": (day.source.confirmations["currency"], day.items["confirmation_row"]),
+        "Desk": (day.source.tickets["currency"], day.items["ticket_row"]),
+        "Bank": (day.source.cash["currency"], entry_row),
+    }
     files.write_items(out / "items.csv", day.items, told)
     files.write_breaks(out / "breaks.csv", day.breaks)
     files.write_rejects(out / "rejects.csv", day.source.rejects)

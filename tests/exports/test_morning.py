@@ -34,7 +34,7 @@ def test_items(tmp_path: Path) -> None:
         state=["break", "agrees"], bank_entries=["E1;E2", ""], account=["=main", ""],
     )  # fmt: skip
     told = Words.of(["JPY", "USD"])
-    morning.write_items(tmp_path / "items.csv", items, {"Broker": (told, np.array([0, -1]))})
+    morning.write_items(tmp_path / "items.csv", items, {"Broker": (told, np.array([0, -1])), "Bank": (told, np.array([-1, -1]))})
     first, second = _back(tmp_path / "items.csv")
     assert list(first) == ITEMS
     assert (first["item"], second["item"]) == ("trade T-1", "trade T-2")
