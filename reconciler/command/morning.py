@@ -33,7 +33,7 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
 def run(arguments: argparse.Namespace) -> int:
     """Reconciles, writes, tells; returns the exit code."""
     from reconciler import settings
-    from reconciler.procedures import morning
+    from reconciler.procedures import morning, outcome
 
     if arguments.since is not None and arguments.since > arguments.date:
         raise KnownError(f"--since {arguments.since} lies after --date {arguments.date}; exchange them.")
@@ -41,8 +41,8 @@ def run(arguments: argparse.Namespace) -> int:
     own_layouts = (settings.user_folder() / "layouts",)
     day = morning.run(arguments.folder, arguments.date, arguments.since, told, layouts=own_layouts)
     command.tell(day.problems)
-    morning.write(day, arguments.out)
-    print(morning.summary_text(day))
+    outcome.write(day, arguments.out)
+    print(outcome.summary_text(day))
     if day.unread:
         return command.NOTHING
     return command.BREAKS if len(day.breaks) else command.AGREES

@@ -22,17 +22,15 @@ from reconciler.breaks import causes, finding, proposing, ranking, stake
 from reconciler.breaks.given import Given
 from reconciler.expected import coupons, settlements
 from reconciler.expected.terms import resolve_terms
-from reconciler.exports import morning as files
 from reconciler.intake import folder as intake
 from reconciler.matching import cash as cash_matching
 from reconciler.matching import trades as trade_matching
-from reconciler.problems import KnownError, Problem
+from reconciler.problems import Problem
 from reconciler.procedures import disputes
 from reconciler.procedures import totals as totals_of
 from reconciler.procedures.strangers import strangers
-from reconciler.records import BREAK_KINDS, STATES, Table, Words, concat, unify
+from reconciler.records import STATES, Table, Words, concat, unify
 from reconciler.settings import Settings
-from reconciler.texts import long_date
 
 Progress = Callable[[str, int, int], None]
 """Told the step in words, how many steps are done and how many there are; while files are read, the rows of the file just read and 0.
@@ -284,36 +282,3 @@ def _day(state: State) -> Day:
         items=items, allocations=allocations, breaks=breaks, proposals=proposals,
         explanations=state.explanations, problems=problems, summary={name: counts[name] for name in STATES},
     )  # fmt: skip
-
-
-def write(day: Day, out: Path) -> None:
-    """Writes items.csv, breaks.csv, rejects.csv and totals.csv into a folder, which is made if need be. Raises KnownError."""
-    try:
-        out.mkdir(parents=True, exist_ok=True)
-    except OSError as fault:
-        raise KnownError(f"The folder {out} cannot be made: {fault.strerror or fault}.") from fault
-    entry_row = np.full(len(day.items), -1, np.int64)
-    entry_row[day.allocations["item_row"]] = day.allocations["cash_row"]
-    told = {
-        "Broker": (day.source.confirmations["currency"], day.items["confirmation_row"]),
-        "Desk": (day.source.tickets["currency"], day.items["ticket_row"]),
-        "Bank": (day.source.cash["currency"], entry_row),
-    }
-    files.write_items(out / "items.csv", day.items, told)
-    files.write_breaks(out / "breaks.csv", day.breaks)
-    files.write_rejects(out / "rejects.csv", day.source.rejects)
-    files.write_totals(out / "totals.csv", day.source.totals)
-
-
-def summary_text(day: Day) -> str:
-    """The morning in a few lines: how many payments agree, which breaks there are, whether the files tie out."""
-    count = len(day.items)
-    states = ", ".join(f"{day.summary[name]} {words}" for name, words in
-                       (("agrees", "agree"), ("within tolerance", "within tolerance"), ("due", "due today"), ("break", "with breaks")))  # fmt: skip
-    lines = [f"{long_date(np.datetime64(day.date))}: {count} payment{'' if count == 1 else 's'}, {states}."]
-    kinds = Counter(day.breaks["break"].to_list())
-    lines += [f"  {kinds[kind]:>7}  {kind}" for kind in BREAK_KINDS if kinds[kind]]
-    read, used, rejected, aside = (int(day.source.totals[f"rows_{name}"].sum()) for name in ("read", "used", "rejected", "set_aside"))
-    why = " (rejects.csv says why)" if rejected else ""
-    lines.append(f"{read} rows read: {used} used, {rejected} rejected{why}, {aside} set aside.")
-    return "\n".join(lines)
