@@ -32,6 +32,17 @@ SEED = 20260330
 LAST = len(MORNINGS) - 1
 
 
+@dataclass(frozen=True)
+class Note:
+    """A fault: the morning it shows and the one it is gone on, the payment, what happened, and the items it may show on."""
+
+    first: int
+    end: int | None
+    name: str
+    what: str
+    items: frozenset[str]
+
+
 @dataclass
 class Told:
     """One row somebody told: from which morning it is in the files, and up to which."""
@@ -54,7 +65,7 @@ class Story:
     late_bonds: dict[str, int] = field(default_factory=dict)
     touched: set[str] = field(default_factory=set)
     positions: Positions | None = None
-    notes: list[tuple[int, int | None, str, str]] = field(default_factory=list)
+    notes: list[Note] = field(default_factory=list)
     """Every fault: the morning it shows, the morning it is gone, the payment, and what happened."""
 
 

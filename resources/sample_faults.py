@@ -15,7 +15,7 @@ from fractions import Fraction
 from typing import TYPE_CHECKING, Any
 
 from tests.oracle import plants
-from tests.oracle.arithmetic import Bond, half_up, payment_date
+from tests.oracle.arithmetic import Bond, half_up
 from tests.oracle.bank import Due
 from tests.oracle.deals import ACCOUNTS, Entry, Trade, reckon
 
@@ -31,7 +31,7 @@ class Stage:
 
     def __init__(self, story: Story, rng: random.Random, mornings: tuple[date, ...]) -> None:
         self.story, self.rng, self.mornings = story, rng, mornings
-        self.hanging = {(due.account, due.bond.bond) for due in story.dues}
+        self.hanging = {due.bond.bond for due in story.dues}
 
     def known(self, trade: Trade) -> int:
         return next(told.first for told in self.story.tickets if told.row is trade.desk)
@@ -42,7 +42,7 @@ class Stage:
             day = trade.true["settlement_date"]
             if trade.true["ticket"] in self.story.touched or self.known(trade) != morning or not wanted(trade):
                 continue
-            if (trade.true["account"], trade.true["bond"]) in self.hanging:
+            if trade.true["bond"] in self.hanging:
                 continue
             if settled is None or settled == (day < self.mornings[morning]):
                 skip -= 1
@@ -64,12 +64,26 @@ class Stage:
         return chosen
 
     def note(self, morning: int, end: int | None, trade: Trade | Due, what: str) -> None:
-        name = (
-            f"trade {trade.true['ticket']}"
-            if isinstance(trade, Trade)
-            else " ".join((trade.truth.kind, trade.account, trade.bond.description, trade.coupon_date.isoformat()))
-        )
-        self.story.notes.append((morning, end, name, what))
+        """Keeps a fault for the page of the sample and for its test."""
+        if isinstance(trade, Trade):
+            facts = trade.true
+            name = f"trade {facts['ticket']}"
+            items = {
+                name,
+                f"confirmation {facts['broker']} {facts['broker_reference']}",
+                f"bank {trade.bank[0].entry}R",
+            }
+        else:
+            day = trade.coupon_date.isoformat()
+            name = f"{trade.truth.kind} {trade.account} {trade.bond.description} {day}"
+            items = {f"{trade.truth.kind} {trade.account} {trade.bond.bond} {day}"}
+        self.keep(morning, end, name, what, items)
+
+    def keep(self, morning: int, end: int | None, name: str, what: str, items: set[str]) -> None:
+        """Keeps a fault under a name of its own."""
+        from make_sample import Note
+
+        self.story.notes.append(Note(morning, end, name, what, frozenset(items)))
 
     def confirmed(
         self,
@@ -304,7 +318,7 @@ def _bank(s: Stage) -> None:
         ),
         1,
     )
-    s.note(0, None, trade, "bank booked a settlement twice; it reverses the second one next morning")
+    s.note(0, 1, trade, "bank booked a settlement twice; it reverses the second one next morning")
     trade = s.pick(0, _named, settled=True)
     trade.bank[0].value_date += timedelta(days=1)
     s.note(0, None, trade, "bank booked a settlement for a wrong day")
@@ -321,7 +335,8 @@ def _bank(s: Stage) -> None:
             Entry(f"X{number + 1:05d}", ACCOUNTS[account], ("USD", "EUR", "GBP", "EUR")[number], day, amount, words),
             morning,
         )
-        s.story.notes.append((morning, None, f"bank X{number + 1:05d}", "entry that nothing explains"))
+        name = f"bank X{number + 1:05d}"
+        s.keep(morning, None, name, "entry that nothing explains", {name})
 
 
 def _bonds(s: Stage, players: dict[str, Bond]) -> None:
@@ -361,11 +376,9 @@ def page(story: Story) -> str:
     ]
     for number, morning in enumerate(MORNINGS):
         lines += [f"## {morning.isoformat()}", "", "| payment | what happened | gone on |", "| --- | --- | --- |"]
-        for first, end, name, what in sorted(story.notes, key=lambda note: (note[0], note[2], note[3])):
-            if first == number:
-                lines.append(f"| {name} | {what} | {MORNINGS[end].isoformat() if end is not None else ''} |")
+        for note in sorted(story.notes, key=lambda note: (note.first, note.name, note.what)):
+            if note.first == number:
+                gone = MORNINGS[note.end].isoformat() if note.end is not None else ""
+                lines.append(f"| {note.name} | {note.what} | {gone} |")
         lines.append("")
     return "\n".join(lines)
-
-
-__all__ = ["happen", "page", "payment_date"]

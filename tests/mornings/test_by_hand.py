@@ -28,7 +28,9 @@ def _rows(path: Path) -> list[dict[str, str]]:
 
 @pytest.mark.parametrize("name", MORNINGS)
 def test_a_morning_by_hand(name: str, tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
-    code = door.main(["morning", str(HERE / name / "in"), "--date", "2026-03-31", "--out", str(tmp_path / "made" / "out")])
+    code = door.main(
+        ["morning", str(HERE / name / "in"), "--date", "2026-03-31", "--out", str(tmp_path / "made" / "out")]
+    )
     told = capsys.readouterr()
     for expected in sorted((HERE / name / "expected").glob("*.csv")):
         wanted = _rows(expected)
