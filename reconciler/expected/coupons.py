@@ -46,7 +46,7 @@ def expect_coupons(
     date: np.datetime64,
     repeats: Table | None = None,
 ) -> Table:
-    """The coupons and redemptions paid in [since, date] as ITEMS, by bond, account, date and kind.
+    """The coupons and redemptions paid in [since, date] as ITEMS, in the order of the bonds and their dates.
 
     `trade_items` are the trades as expected; those of tickets move the holdings, those of confirmations alone do not. `repeats` names
     tickets told twice (kind "ticket"), which move nothing.
