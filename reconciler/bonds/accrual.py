@@ -81,6 +81,8 @@ def accrued(terms: Terms, rows: Array, settle: Array, face_minor: Array) -> Accr
     day_count = terms.day_count[rows]
     days = daycounts.accrued_days(day_count, start, until, part, terms.calendars, calendar)
     above, below = daycounts.fraction(day_count, start, until, part, terms.calendars, calendar)
+    if terms.accrued_cap.any():
+        above, below = _capped(terms, rows, periods, above, below)
     ex = np.zeros(len(rows), np.bool_)
     some = np.flatnonzero(pays & (terms.ex_days[rows] != MISSING))
     if len(some):
@@ -92,7 +94,6 @@ def accrued(terms: Terms, rows: Array, settle: Array, face_minor: Array) -> Accr
     rate = np.where(pays, rate, 0)
     above, below, days = np.where(pays, above, 0), np.where(pays, below, 1), np.where(pays, days, 0)
     minor = _rounded(terms, rows, face_minor, factor, rate, above, below)
-    minor = _capped(terms, rows, minor, face_minor, factor, rate)
     return Accrued(
         days, np.where(sound, minor, MISSING), rate, factor, above, below, ex, periods.start, periods.end, sound
     )
@@ -145,15 +146,11 @@ def _rounded(
     return out
 
 
-def _capped(terms: Terms, rows: Array, minor: Array, face: Array, factor: Array, rate: Array) -> Array:
-    capped = terms.accrued_cap[rows]
-    if not capped.any():
-        return minor
-    w = np.flatnonzero(capped)
-    most = half_up([face[w], rate[w], factor[w]], [RATE, ONE, np.maximum(terms.frequency[rows[w]], 1)])
-    out = minor.copy()
-    out[w] = np.minimum(out[w], most)
-    return out
+def _capped(terms: Terms, rows: Array, periods: Periods, above: Array, below: Array) -> tuple[Array, Array]:
+    """No more than a whole regular coupon, where the market says so (184 days of a Japanese half-year earn no more than 182.5)."""
+    frequency = np.maximum(terms.frequency[rows], 1)
+    over = terms.accrued_cap[rows] & periods.regular & (above * frequency > below)
+    return np.where(over, 1, above), np.where(over, frequency, below)
 
 
 def coupon_amounts(terms: Terms, rows: Array, unadjusted: Array, face_minor: Array) -> Array:
@@ -242,8 +239,3 @@ def partial_redemptions(terms: Terms, rows: Array, first: np.datetime64, last: n
 def partial_amounts(terms: Terms, rows: Array, drop_e12: Array, face_minor: Array) -> Array:
     """What a drop of the factor pays on a face, int64 minor units."""
     return half_up([face_minor, drop_e12, terms.redemption_price_e12[rows]], [ONE, 100 * ONE])
-
-
-def no_period(length: int) -> Array:
-    """Dates that stand for no period."""
-    return np.full(length, NAT)
