@@ -32,6 +32,7 @@ class Reading:
     slips: list[Callable[[dict[str, Any]], None]] = field(default_factory=list)
 
     def told(self) -> dict[str, Any]:
+        """What the party tells, its slips included."""
         facts = reckon(self.bond, self.facts, to=self.to)
         for slipped in self.slips:
             slipped(facts)

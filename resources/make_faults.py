@@ -90,7 +90,8 @@ def _one(scene: issues.Scene, bonds: list[Bond], kind: str, pairs: bool, number:
             if BANK_FAULTS[kind](trade, rng):
                 return trade, "Bank", kind
             continue
-        party = "Desk" if rng.random() < 0.25 else "Broker"
+        # The ticket's fees are the terms' own, so a fee is always the broker's fault.
+        party = "Desk" if rng.random() < 0.25 and not kind.startswith("fee") else "Broker"
         chosen = [kind, rng.choice([name for name in TRADE_FAULTS if name != kind])] if pairs else [kind]
         if plant(trade, party, chosen, rng):
             return trade, party, "+".join(chosen)

@@ -34,6 +34,7 @@ class Stage:
         self.hanging = {due.bond.bond for due in story.dues}
 
     def known(self, trade: Trade) -> int:
+        """The first morning whose files have the trade."""
         return next(told.first for told in self.story.tickets if told.row is trade.desk)
 
     def pick(self, morning: int, wanted: Wanted, settled: bool | None = None, skip: int = 0) -> Trade:

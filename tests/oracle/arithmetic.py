@@ -12,6 +12,7 @@ from collections.abc import Iterable
 from dataclasses import dataclass, field
 from datetime import date, timedelta
 from fractions import Fraction
+from itertools import pairwise
 
 from tests.oracle.days import Calendar, last_day, leap_days, months_on, thirty
 
@@ -107,7 +108,7 @@ def periods(bond: Bond) -> list[Period]:
         ends = [day for day in ends if day >= bond.first_coupon]
     if bond.last_regular and bond.maturity > bond.last_regular:
         ends.append(bond.maturity)
-    pairs = set(zip(regular, regular[1:], strict=False))
+    pairs = set(pairwise(regular))
     found = []
     for start, end in zip([bond.accrual_start, *ends[:-1]], ends, strict=True):
         counted = [bond.calendar.roll(day, bond.payment_adjustment) if bond.adjusted else day for day in (start, end)]
@@ -129,7 +130,7 @@ def _icma(bond: Bond, period: Period, start: date, end: date) -> Fraction:
     else:
         edges = [day for day in grid(bond, period.start) if day <= period.end]
     total = Fraction(0)
-    for left, right in zip(edges, edges[1:], strict=False):
+    for left, right in pairwise(edges):
         inside = (min(right, end) - max(left, start)).days
         if inside > 0:
             total += Fraction(inside, (right - left).days * bond.frequency)

@@ -19,7 +19,6 @@ from tests.oracle.oddities import book, loose_entries, odd_bonds, safe_trades
 from tests.oracle.plants import TRADE_PLANTS
 from tests.oracle.world import CLOSINGS, World
 
-
 STYLES = (
     ("T{:06d}", "{0:.2}{1}"),
     ("1{:05d}", "{0:.3}-{1}"),

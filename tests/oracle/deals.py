@@ -211,7 +211,7 @@ def pay(trade: Trade, rng: random.Random) -> None:
             "both",
             "two entries",
             "bank's own",
-        )  # fmt: skip
+        )
     )
     word = "PURCHASE" if facts["side"] > 0 else "SALE"
     entry = Entry(f"E{number}", facts["account"], facts["currency"], facts["settlement_date"], amount,
