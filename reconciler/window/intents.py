@@ -118,7 +118,7 @@ def _pane(by: int) -> Callable[[MainWindow], None]:
 
 
 def _back(window: MainWindow) -> None:
-    if window.job is not None and window.progress.isVisible():
+    if window.progress.isVisible():
         window.cancel()
     elif window.page is not None and not window.page.back():
         window.page.focus_list()

@@ -38,14 +38,16 @@ class _Runner(QRunnable):
 
 
 class Job(QObject):
-    """One piece of work. Connect the signals, then call `start`."""
+    """One piece of work. Connect the signals, then call `start`. `came` brings what was handed over before the end."""
 
     progressed = Signal(str, object, object)
+    came = Signal(object)
     succeeded = Signal(object)
     failed = Signal(object)
     cancelled = Signal()
     ended = Signal()
     _came_back = Signal(str, object)
+    _part_came = Signal(object)
 
     def __init__(self, work: Callable[[Progress], Any], name: str = "", parent: QObject | None = None) -> None:
         super().__init__(parent)
@@ -54,6 +56,7 @@ class Job(QObject):
         self._stop = threading.Event()
         self._over = False
         self._came_back.connect(self._deliver, Qt.ConnectionType.QueuedConnection)
+        self._part_came.connect(self._part, Qt.ConnectionType.QueuedConnection)
 
     def start(self) -> Job:
         """Puts the work into the thread pool."""
@@ -78,6 +81,16 @@ class Job(QObject):
         if self._stop.is_set():
             raise Cancelled
         self.progressed.emit(step, done, total)
+
+    def hand_over(self, part: object) -> None:
+        """Told by the working function: something that can be shown already, while the work goes on."""
+        if self._stop.is_set():
+            raise Cancelled
+        self._part_came.emit(part)
+
+    def _part(self, part: object) -> None:
+        if not self._over:
+            self.came.emit(part)
 
     def work_in_thread(self) -> None:
         """Runs the work; called by the thread pool only."""

@@ -8,6 +8,7 @@ from __future__ import annotations
 
 import datetime
 import re
+from collections.abc import Callable
 from dataclasses import dataclass, field
 from pathlib import Path
 from typing import Any
@@ -34,13 +35,26 @@ class Loaded:
     sheets: dict[str, Sheet] = field(default_factory=dict)
 
     @property
+    def searching(self) -> bool:
+        """True while the causes of the breaks are still searched for."""
+        return getattr(self.day, "explanations", None) is None
+
+    def give_up_searching(self) -> None:
+        """Says of breaks without a cause that they are open, since nobody searches any more."""
+        for key in ("breaks", "due", "agreed"):
+            self.sheets[key].data.searching = False
+
+    @property
     def problems(self) -> tuple[Problem, ...]:
         """What was wrong with files and folder as a whole."""
         return tuple(self.day.source.problems)
 
 
-def load(folder: Path, date: datetime.date, progress: Progress) -> Loaded:
-    """Runs the morning of a folder and prepares its lists; raises KnownError when nothing can be reconciled."""
+def load(folder: Path, date: datetime.date, progress: Progress, early: Callable[[Loaded], None] | None = None) -> Loaded:
+    """Runs the morning of a folder and prepares its lists; raises KnownError when nothing can be reconciled.
+
+    `early` is given the lists before the causes are known: looking at the breaks need not wait for the search.
+    """
     from reconciler import settings
     from reconciler.procedures import ahead, morning
 
@@ -57,9 +71,15 @@ def load(folder: Path, date: datetime.date, progress: Progress) -> Loaded:
             progress(step, rows, 0)
 
     layouts = (settings.user_folder() / "layouts",)
-    day = morning.run(folder, date, settings=told, progress=tell, layouts=layouts)
-    progress("Looking ahead", 0, 0)
-    return arrange(folder, day, ahead.ahead(day))
+    coming: list[Any] = []
+
+    def meanwhile(day: Any) -> None:
+        coming.append(ahead.ahead(day))
+        if early is not None:
+            early(arrange(folder, day, coming[0]))
+
+    day = morning.run(folder, date, settings=told, progress=tell, layouts=layouts, meanwhile=meanwhile)
+    return arrange(folder, day, coming[0])
 
 
 def arrange(folder: Path | None, day: Any, coming: Any) -> Loaded:

@@ -40,6 +40,7 @@ class MainWindow(QMainWindow):
         super().__init__()
         self.loaded: loading.Loaded | None = None
         self.job: jobs.Job | None = None
+        self.loading: jobs.Job | None = None
         self.problems: tuple[Problem | str, ...] = ()
         self._wanted: tuple[Path, datetime.date] | None = None
         self.setWindowTitle(recent.NAME)
@@ -111,13 +112,15 @@ class MainWindow(QMainWindow):
         """Reads a morning beside the window and shows it when it is there."""
         self.cancel()
         self.banner.hide()
-        job = jobs.Job(lambda progress: loading.load(folder, date, progress), "load", self)
-        job.succeeded.connect(self.show_loaded)
+        job = jobs.Job(lambda progress: loading.load(folder, date, progress, job.hand_over), "load", self)
+        job.came.connect(self.show_loaded)
+        job.succeeded.connect(self.show_causes)
         job.failed.connect(lambda fault: self.say_failed(f"The morning in {folder.name} could not be loaded.", fault))
         self._wanted = (folder, date)
         if self.loaded is None:
             self.welcome.loading(folder.name)
             self.stack.setCurrentWidget(self.welcome)
+        self.loading = job
         return self.run(job, f"Reading {folder.name}")
 
     def folder_wanted(self) -> Path | None:
@@ -132,38 +135,52 @@ class MainWindow(QMainWindow):
     def run(self, job: jobs.Job, words: str) -> jobs.Job:
         """Shows a job's progress and runs it."""
         self.job = job
-        job.progressed.connect(self.progress.tell)
-        job.ended.connect(self._job_over)
-        # work that is over at once should not flash a bar
-        QTimer.singleShot(150, lambda: self.progress.begin(words) if job.running() and self.job is job else None)
+        job.progressed.connect(lambda *told: self.progress.tell(*told) if job is self.job else None)
+        job.ended.connect(lambda: self._job_over(job))
+        # work that is over at once should not flash a bar, nor should a search for causes that is over soon
+        QTimer.singleShot(150, lambda: None if self._quiet(job) else self._show_progress(job, words))
+        QTimer.singleShot(4000, lambda: self._show_progress(job, "Searching for causes") if self._quiet(job) else None)
         job.start()
         return job
 
-    def cancel(self) -> None:
-        """Stops the running job; what is shown stays as it was."""
-        if self.job is not None:
-            self.job.cancel()
+    def _show_progress(self, job: jobs.Job, words: str) -> None:
+        if job is self.job and job.running():
+            self.progress.begin(words)
 
-    def _job_over(self) -> None:
-        self.job = None
-        self.progress.hide()
+    def _quiet(self, job: jobs.Job) -> bool:
+        """True when what a load is for is shown already, and only its causes are still to come."""
+        return job is self.loading and self.loaded is not None and self.loaded.searching
+
+    def cancel(self) -> None:
+        """Stops the running jobs; what is shown stays as it was."""
+        for job in (self.job, self.loading):
+            if job is not None:
+                job.cancel()
+
+    def _job_over(self, job: jobs.Job) -> None:
+        if job is self.loading:
+            self.loading = None
+            if self.loaded is not None:
+                if self.loaded.searching:
+                    self.loaded.give_up_searching()
+                    for page in self.pages.values():
+                        page.table.renew()
+                self._after_show()
+        if job is self.job:
+            self.job = None
+            self.progress.hide()
         if self.loaded is None and self.stack.currentWidget() is self.welcome:
             self.welcome.invite()
 
     def show_loaded(self, loaded: loading.Loaded) -> None:
         """Puts a morning up."""
         self.loaded = loaded
+        self.progress.hide()
         self.problems = loaded.problems
         for key, page in self.pages.items():
             page.show_day(loaded)
             self.sidebar.buttons[key].set_count(page.count())
         day = loaded.day
-        totals = day.source.totals
-        files = len(set(totals["file"].to_list()))
-        rejected = int(totals["rows_rejected"].sum())
-        foot = [loaded.folder.name if loaded.folder else "", figures.count(files, "file"),
-                f"{figures.count(rejected, 'row')} rejected" if rejected else "no row rejected"]  # fmt: skip
-        self.sidebar.show_day(day.date, "\n".join(part for part in foot if part))
         self.setWindowTitle(f"{figures.long_date(day.date)} – {recent.NAME}")
         if loaded.folder is not None:
             self._wanted = (loaded.folder, day.date)
@@ -172,7 +189,29 @@ class MainWindow(QMainWindow):
         self._enable()
         current = self.stack.currentWidget()
         self.show_page(current.key if isinstance(current, Page) else "breaks")
-        jobs.Job(lambda progress: loading.prepare(loaded, progress), "prepare", self).start()
+        self._after_show()
+
+    def show_causes(self, loaded: loading.Loaded) -> None:
+        """Puts up the same morning with its causes; search, order and current row stay as they are."""
+        if self.loaded is None or (self.loaded.day.items is not loaded.day.items and len(self.loaded.day.items) != len(loaded.day.items)):
+            self.show_loaded(loaded)
+            return
+        self.loaded = loaded
+        for page in self.pages.values():
+            page.show_day(loaded, keep=True)
+        self._after_show()
+
+    def _after_show(self) -> None:
+        loaded = self.loaded
+        assert loaded is not None
+        totals = loaded.day.source.totals
+        rejected = int(totals["rows_rejected"].sum())
+        foot = [loaded.folder.name if loaded.folder else "", figures.count(len(set(totals["file"].to_list())), "file"),
+                f"{figures.count(rejected, 'row')} rejected" if rejected else "no row rejected",
+                "" if not loaded.searching else "searching for causes …" if self.loading else "causes not searched for"]  # fmt: skip
+        self.sidebar.show_day(loaded.day.date, "\n".join(part for part in foot if part))
+        if not loaded.searching or self.loading is None:
+            jobs.Job(lambda progress: loading.prepare(loaded, progress), "prepare", self).start()
 
     def _can_assign(self) -> bool:
         """True when one of the problems is a confirmations file whose columns can be settled by hand."""

@@ -86,6 +86,10 @@ class SheetModel(QAbstractTableModel):
         self._pages.clear()
         self.layoutChanged.emit()
 
+    def forget(self) -> None:
+        """Drops every page of cells, so that they are formatted anew."""
+        self._pages.clear()
+
     def search(self, typed: str) -> None:
         """Narrows the sheet to what was typed."""
         self._renew(lambda: self.sheet.search(typed))

@@ -34,6 +34,7 @@ class Payments:
         self.rows = np.asarray(rows, np.int64)
         self.year = day.date.astype(object).year if isinstance(day.date, np.datetime64) else day.date.year
         self.first = overview.first_break[self.rows]
+        self.searching = getattr(day, "explanations", None) is None
         self.telling = overview.telling_break[self.rows]
         used = np.unique(overview.digits[self.rows]) if len(rows) else np.array([2])
         # decimal points align on the finest currency in the list
@@ -184,12 +185,14 @@ def why_cells(data: Payments, at: Rows) -> list[Cell]:
             continue
         unit = "cent" if digits[i] == 2 else "last unit"
         small = CERTAINTY_WORDS.get(certainties[i], "open").format(unit=unit)
+        if data.searching and not causes[i]:
+            small = "searching for the cause …"
         if more[i] > 0:
             small += f"  ·  {figures.count(more[i], 'more break')}"
         # without a cause the kind stands first, and the sentence about it after the certainty
         text = causes[i] or kind
         text = text[:1].upper() + text[1:]
-        if not causes[i] and sentences[i]:
+        if not causes[i] and sentences[i] and not data.searching:
             small += f"  ·  {sentences[i]}"
         cells.append(Cell(text, small, {"proved": "✓", "likely": "≈"}.get(certainties[i], ""),
                           CERTAINTY_TONES.get(certainties[i], "soft")))

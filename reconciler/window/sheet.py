@@ -181,6 +181,14 @@ class Sheet:
         """The rows that would be shown if the facet `key` were not used (for the counts beside its words)."""
         return self._combine(skip=key)
 
+    def take_view(self, other: Sheet) -> None:
+        """Shows the same rows in the same order as another sheet of the same list."""
+        self.typed = other.typed
+        self.chosen = {key: words for key, words in other.chosen.items() if key in self.facets}
+        if any(column.key == other.sorted_by for column in self.columns):
+            self.sorted_by, self.descending = other.sorted_by, other.descending
+        self._narrow()
+
     def place_of(self, row: int) -> int:
         """Where a row number of the list stands among those shown, -1 when it is hidden."""
         found = np.flatnonzero(self.shown == row)

@@ -123,17 +123,20 @@ class SheetView(QTableView):
         self.entered.connect(self._hover)
         theme().changed.connect(self.viewport().update)
 
-    def set_sheet(self, sheet: Sheet) -> None:
-        """Shows another sheet, with its first row current."""
+    def set_sheet(self, sheet: Sheet, row: int = -1) -> None:
+        """Shows another sheet, with its first row current, or the sheet's row given."""
         old = super().model()
+        top = self.verticalScrollBar().value() if row >= 0 else 0
         self.setModel(SheetModel(sheet, self))
         if old is not None:
             old.deleteLater()
         self._base_row = -1
         self._needed = self._needed_widths()
         self.share_width()
+        place = sheet.place_of(row) if row >= 0 else 0
         if self.model().rowCount():
-            self.go_to(0)
+            self.go_to(max(place, 0))
+            self.verticalScrollBar().setValue(top)
         self.shown_changed.emit()
 
     def model(self) -> SheetModel:
@@ -181,6 +184,12 @@ class SheetView(QTableView):
         """Sorts by a column, keeping the current row."""
         self._keep_row(lambda: self.model().sort_by(key, descending))
         self.horizontalHeader().viewport().update()
+
+    def renew(self) -> None:
+        """Asks for every cell in view again."""
+        if self.model() is not None:
+            self.model().forget()
+            self.viewport().update()
 
     def copy(self) -> str:
         """Puts the selected rows on the clipboard as tab-separated text with heads; returns it."""

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import datetime
 import shutil
+import threading
 from collections.abc import Iterator
 from pathlib import Path
 
@@ -153,3 +154,60 @@ def test_an_unreadable_confirmations_file_is_said_and_the_rest_goes_on(window: M
     assert "orrin_teale_20260331.csv" in window.banner.text.text()
     assert window.banner.assign.isVisible()
     assert window.loaded.day.breaks["break"].to_list().count("no confirmation") > 10
+
+
+def test_breaks_are_shown_before_their_causes_and_the_view_stays(
+    qtbot: QtBot, window: MainWindow, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    from reconciler.procedures import morning
+
+    hold, steps = threading.Event(), list(morning.STEPS)
+    search = steps[-1]
+
+    def held(state: object) -> object:
+        hold.wait(20)
+        return search(state)  # type: ignore[arg-type]
+
+    held.__doc__ = search.__doc__
+    monkeypatch.setattr(morning, "name_causes", held)
+    monkeypatch.setattr(morning, "STEPS", (*steps[:-1], held))
+    window.load(MORNING, datetime.date(2026, 3, 31))
+    qtbot.waitUntil(lambda: window.loaded is not None, timeout=20_000)
+    page = window.page
+    assert window.loaded.searching
+    assert "searching for causes" in window.sidebar.foot.text()
+    assert any(page.table.model().cell(row, 5).small == "searching for the cause …" for row in range(10))
+    page.choose("party", ("Broker",))
+    page.table.sort_by("payment", False)
+    page.table.go_to(3)
+    title, shown = page.detail.title.text(), page.table.model().rowCount()
+    hold.set()
+    assert jobs.wait_idle(60_000)
+    assert not window.loaded.searching
+    assert (page.detail.title.text(), page.table.model().rowCount()) == (title, shown)
+    assert page.table.currentIndex().row() == 3
+    assert page.sheet.sorted_by == "payment"
+    assert "searching" not in window.sidebar.foot.text()
+    assert any("proved" in page.table.model().cell(row, 5).small for row in range(shown))
+
+
+def test_a_search_for_causes_can_be_given_up(qtbot: QtBot, window: MainWindow, monkeypatch: pytest.MonkeyPatch) -> None:
+    from reconciler.procedures import morning
+
+    hold, steps = threading.Event(), list(morning.STEPS)
+
+    def held(state: object) -> object:
+        hold.wait(20)
+        return state
+
+    held.__doc__ = "Searching for causes"
+    monkeypatch.setattr(morning, "name_causes", held)
+    monkeypatch.setattr(morning, "STEPS", (*steps[:-1], held))
+    window.load(MORNING, datetime.date(2026, 3, 31))
+    qtbot.waitUntil(lambda: window.loaded is not None, timeout=20_000)
+    window.cancel()
+    assert "causes not searched for" in window.sidebar.foot.text()
+    assert window.page.table.model().cell(0, 5).small.startswith("open")
+    hold.set()
+    assert jobs.wait_idle(60_000)
+    assert window.loaded.searching

@@ -34,7 +34,7 @@ def breaks_of(day: Any, item_row: int) -> list[dict[str, Any]]:
     """The breaks of one item, the most urgent first."""
     rows = np.flatnonzero(np.asarray(day.breaks["item_row"]) == item_row)
     rows = rows[np.argsort(np.asarray(day.breaks["rank"])[rows], kind="stable")]
-    return [day.breaks.row(int(row)) for row in rows]
+    return [{**day.breaks.row(int(row)), "row": int(row)} for row in rows]
 
 
 def telling_first(loaded: Any, item_row: int) -> list[dict[str, Any]]:

@@ -134,7 +134,7 @@ def working(loaded: Loaded, row: int) -> Shown:
     certainty = first["certainty"] if first else ""
     look = {"proved": "differ", "likely": "day", "open": "silent"}.get(certainty, "")
     words = {"proved": "Proved. ", "likely": "Likely. ", "open": "Open. "}.get(certainty, "")
-    more = [*told.notes]
+    more = [*told.notes, *(_others(loaded, first["row"]) if first else ())]
     if len(found) > 1:
         more.append(f"{figures.count(len(found) - 1, 'other break')} on this payment: "
                     + ", ".join(sorted({one["break"] for one in found[1:]})) + ".")  # fmt: skip
@@ -144,6 +144,24 @@ def working(loaded: Loaded, row: int) -> Shown:
     return Shown(working_sheet(told, {one["party"] for one in found}), strip_of(told.strip),
                  f"{words}{sentence[:1].upper()}{sentence[1:]}", " ".join(more), look,
                  first["next_step"] if first else "")  # fmt: skip
+
+
+def _others(loaded: Loaded, break_row: int) -> list[str]:
+    """What else was tried on a break, and what else of it fits."""
+    if loaded.searching:
+        return ["The cause is still searched for."]
+    explanations = loaded.day.explanations
+    rows = np.flatnonzero(np.asarray(explanations["break_row"]) == break_row)
+    if not len(rows):
+        return []
+    tried = int(explanations["tried"][rows].max())
+    causes = [explanations["cause"].text(int(row)) for row in rows[np.argsort(explanations["place"][rows], kind="stable")]]
+    others = [cause for cause in dict.fromkeys(causes[1:]) if cause and cause != causes[0]]
+    told = f"{figures.count(tried, 'explanation')} {'was' if tried == 1 else 'were'} tried"
+    if not others:
+        return [f"{told}; no other fits."]
+    rest = f" and {figures.count(len(others) - 3, 'more')}" if len(others) > 3 else ""
+    return [f"{told}; these fit too: {', '.join(others[:3])}{rest}."]
 
 
 def strip_of(told: Any) -> Strip:

@@ -31,13 +31,13 @@ class AheadPage(Page):
         self.splitter.setSizes([330, 380])
         self.column.addWidget(self.splitter, 1)
 
-    def show_day(self, loaded: Any) -> None:
+    def show_day(self, loaded: Any, keep: bool = False) -> None:
         sheet, ahead = loaded.sheets["ahead"], loaded.ahead
         self.ladder.show_bars(ahead.bars)
         self.ladder_card.setVisible(bool(ahead.bars))
         told = f"{figures.count(sheet.length, 'payment')} until {figures.long_date(ahead.until)}, as the terms say"
         self.header.say("Payments ahead", told)
-        self.show_sheet(sheet)
+        self.show_sheet(sheet, keep)
 
     def count(self) -> int | None:
         return None

@@ -48,13 +48,13 @@ class BondsPage(Page):
         self.table.current_changed.connect(self._show_bond)
         self.row_opened.connect(lambda _row: self.coupons.setFocus(Qt.FocusReason.ShortcutFocusReason))
 
-    def show_day(self, loaded: Any) -> None:
+    def show_day(self, loaded: Any, keep: bool = False) -> None:
         self._loaded = loaded
         bonds = loaded.sheets["bonds"]
         currencies = len(bonds.facets["currency"].words)
         self.header.say("Bonds", f"{figures.count(bonds.length, 'bond')} in "
                         f"{figures.count(currencies, 'currency', 'currencies')}")  # fmt: skip
-        self.show_sheet(bonds)
+        self.show_sheet(bonds, keep)
 
     def count(self) -> int | None:
         return None

@@ -37,7 +37,7 @@ class FilesPage(Page):
         self.splitter.setSizes([440, 300])
         self.column.addWidget(self.splitter, 1)
 
-    def show_day(self, loaded: Any) -> None:
+    def show_day(self, loaded: Any, keep: bool = False) -> None:
         sheet, rejects = loaded.sheets["files"], loaded.sheets["rejects"]
         totals = loaded.day.source.totals
         read, used = int(totals["rows_read"].sum()), int(totals["rows_used"].sum())
@@ -46,7 +46,7 @@ class FilesPage(Page):
         files = len({name for name in totals["file"].to_list()})
         self.header.say("Files of the day", f"{figures.count(files, 'file')}, {figures.count(read, 'row')}  ·  {used:,} used, "
                         f"{rejected:,} rejected, {aside:,} set aside  ·  {tie}")  # fmt: skip
-        self.show_sheet(sheet)
+        self.show_sheet(sheet, keep)
         self.rejects.set_sheet(rejects)
         self.rejects_title.setText(figures.count(rejects.length, "rejected row"))
         self.below.setVisible(rejects.length > 0)

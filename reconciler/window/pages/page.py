@@ -66,17 +66,22 @@ class Page(QWidget):
         """What the page says when its list is empty."""
         return f"No {self.noun}s", ""
 
-    def show_sheet(self, sheet: Sheet) -> None:
-        """Shows a list."""
-        self.header.search.blockSignals(True)
-        self.header.search.clear()
-        self.header.search.blockSignals(False)
+    def show_sheet(self, sheet: Sheet, keep: bool = False) -> None:
+        """Shows a list; `keep` when it is the same list with more known, so that search, order and current row stay."""
+        before = self.sheet if keep else None
+        row = self.table.current_row() if before is not None else -1
+        if before is None:
+            self.header.search.blockSignals(True)
+            self.header.search.clear()
+            self.header.search.blockSignals(False)
+        else:
+            sheet.take_view(before)
         self.header.search.be_patient(sheet.length)
         self.filters.set_sheet(sheet)
-        self.table.set_sheet(sheet)
+        self.table.set_sheet(sheet, row)
 
-    def show_day(self, loaded: Any) -> None:
-        """Shows another morning (window/loading.py: Loaded)."""
+    def show_day(self, loaded: Any, keep: bool = False) -> None:
+        """Shows another morning (window/loading.py: Loaded), or with `keep` the same one with its causes."""
         raise NotImplementedError
 
     # --- what a person does

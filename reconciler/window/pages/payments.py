@@ -35,7 +35,7 @@ class PaymentsPage(Page):
         self.table.current_changed.connect(self._show_detail)
         self.row_opened.connect(lambda _row: self.open_detail())
 
-    def show_day(self, loaded: Any) -> None:
+    def show_day(self, loaded: Any, keep: bool = False) -> None:
         self._loaded = loaded
         sheet = loaded.sheets[self.key]
         counts, breaks = loaded.overview.counts, loaded.overview.breaks
@@ -52,10 +52,11 @@ class PaymentsPage(Page):
             tolerance = counts["within tolerance"]
             told = f"{tolerance:,} of them within tolerance" if tolerance else "everybody who speaks tells the same"
             self.header.say(f"{agree:,} agreed", told)
-        self.show_sheet(sheet)
+        self.show_sheet(sheet, keep)
         if not sheet.length:
             self.detail.show_row(None, -1)
-        self.detail.setVisible(bool(sheet.length))
+        if not keep:
+            self.detail.setVisible(bool(sheet.length))
 
     def count(self) -> int | None:
         if self.key == "breaks" and self._loaded is not None:

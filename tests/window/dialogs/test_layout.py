@@ -5,7 +5,6 @@ from __future__ import annotations
 import datetime
 import shutil
 from collections.abc import Iterator
-from pathlib import Path
 
 import pytest
 from PySide6.QtWidgets import QComboBox
