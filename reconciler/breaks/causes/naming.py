@@ -18,6 +18,7 @@ from reconciler.breaks.causes.cases import Cases, from_breaks
 from reconciler.breaks.causes.judging import CHANCE, COARSE
 from reconciler.breaks.causes.singles import FOLLOWS
 from reconciler.breaks.causes.trying import Hypothesis, Search
+from reconciler.breaks.causes.variants import CHARGE
 from reconciler.money import MISSING, to_text
 from reconciler.records import Table, Words, table
 
@@ -103,7 +104,8 @@ def _judged(part: Search, one: int, fits: list[Hypothesis], chance: float) -> li
     told, right = int(part.told["amount"][one]), int(part.cases.terms.amount[one])
     apart = abs(told - right)
     coarse = apart <= COARSE and not _accrued_apart(part, one)
-    alone = len(_families(fits)) == 1
+    # any round sum may be a charge: it is named, never proved
+    alone = len(_families(fits)) == 1 and not any(v.cause is CHARGE for hypothesis in fits for v in hypothesis)
     certain = "proved" if alone and not coarse and chance < CHANCE else "likely"
     seen: set[tuple[str, ...]] = set()
     out: list[Found] = []

@@ -13,9 +13,9 @@ import numpy as np
 
 from reconciler.bonds.terms import Terms
 from reconciler.breaks.causes import reckoning
-from reconciler.breaks.causes.cases import Cases
+from reconciler.breaks.causes.cases import BANK, Cases
 from reconciler.breaks.causes.judging import LOOSE, accidental
-from reconciler.breaks.causes.variants import Payment, Variant
+from reconciler.breaks.causes.variants import CHARGE, Payment, Variant
 from reconciler.money import MISSING
 
 Array = np.ndarray[Any, Any]
@@ -56,7 +56,7 @@ class Search:
         self.numbers: dict[str, int] = {}
         self.open = np.ones(len(cases), np.bool_)
         self.tried: list[tuple[Payment, Array, Array]] = []
-        self._kinds: dict[tuple[tuple[int, ...], ...], Array] = {}
+        self._kinds: dict[tuple[tuple[tuple[int, ...], bool], ...], Array] = {}
 
     def _right(self) -> Array:
         """The figure that the told one is measured against: the amount as the terms have it."""
@@ -85,11 +85,13 @@ class Search:
 
     def kinds(self, *variants: Variant) -> Array:
         """Where all the variants apply to the kind of payment."""
-        key = tuple(variant.kinds for variant in variants)
+        key = tuple((variant.kinds, variant.cause is CHARGE) for variant in variants)
         if key not in self._kinds:
             ok = np.ones(len(self.cases), np.bool_)
-            for kinds in key:
+            for kinds, bank_alone in key:
                 ok &= np.isin(self.cases.kind, kinds)
+                if bank_alone:
+                    ok &= self.cases.party == BANK
             self._kinds[key] = ok
         return self._kinds[key]
 
@@ -99,8 +101,11 @@ class Search:
         Only figures that the other told facts allow can fit by accident. Where the told accrued may be the noise itself and the amount
         merely follows it, the accrued of every try counts.
         """
-        right, told = self.right[rows], self.told["amount"][rows]
-        accrued = self.cases.terms.accrued[rows]
+        told = self.told["amount"][rows]
+        # measured from what the party's own facts give; where that is what it told, from the terms
+        own, own_accrued = self.base.amount[rows], self.base.accrued[rows]
+        right = np.where((told == own) | (own == MISSING), self.right[rows], own)
+        accrued = np.where(self.told["accrued"][rows] == own_accrued, self.cases.terms.accrued[rows], own_accrued)
         strict, loose = np.empty((len(rows), len(self.tried)), np.int64), np.empty((len(rows), len(self.tried)), np.int64)
         for place, (payment, amount, applies) in enumerate(self.tried):
             known = applies[rows] & (amount[rows] != MISSING)

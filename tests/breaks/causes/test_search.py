@@ -39,6 +39,7 @@ def test_single_faults(tmp_path: Path, payments: int, seed: int) -> None:
 def test_two_faults_at_once(tmp_path: Path, payments: int, seed: int) -> None:
     total = _scored(tmp_path, payments, seed, True, None)
     assert total.wrong == 0
+    # what is missed is mostly a fault that changed nothing (Act/360 for a bond that is 30/360 over 30 days)
     assert total.first >= 0.85 * total.planted
 
 
