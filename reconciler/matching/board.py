@@ -32,7 +32,8 @@ _UNDOING = ("REVERSAL", "REVERSED", "REVERSE", "REV", "STORNO", "CANCEL", "CANCE
 class Board:
     """Payments (`i_` columns, rows of items) and entries (`e_` columns, rows of cash).
 
-    `i_amounts` are the amounts of Terms, Desk and Broker, `i_expected` the first one known; `i_days` and `e_days` are days as int64.
+    `i_amounts` are the amounts of Terms, Desk and Broker, `i_different` the same with MISSING for one that a party before told,
+    `i_expected` the first one known; `i_days` and `e_days` are days as int64.
     `i_open` and `e_open` say who still waits; payments of nothing and those of `silent` wait for nothing.
     """
 
@@ -45,6 +46,10 @@ class Board:
         self.e_bond = told
         self.e_reference = cash["reference"].codes.astype(np.int64)
         self.i_amounts = [items["terms_minor"], items["desk_minor"], items["broker_minor"]]
+        self.i_different = [
+            np.where(np.logical_or.reduce([column == other for other in self.i_amounts[:n]]), MISSING, column) if n else column
+            for n, column in enumerate(self.i_amounts)
+        ]
         self.i_expected = first_known(self.i_amounts, MISSING)
         self.e_amount = cash["amount_minor"]
         self.i_days = first_known([_days(items[n]) for n in ("terms_date", "desk_date", "broker_date")], MISSING)

@@ -28,23 +28,25 @@ _DAYS_OFF = sorted((d for d in range(-EARLY, LATE + 1) if d), key=lambda d: (d i
 def pair_exact(board: Board) -> None:
     """Takes the pairs of equal amounts."""
     for off in (0, 1, -1):
-        for amounts in board.i_amounts:
+        for amounts in board.i_different:
             _with_bond(board, amounts, off)
     for off in (0, 1, -1):
-        for amounts in board.i_amounts:
+        for amounts in board.i_different:
             _without_bond(board, amounts, off)
 
 
 def pair_elsewhere(board: Board) -> None:
     """Entries with the bond and the very amount on another account or in another currency."""
-    for amounts in board.i_amounts:
+    for amounts in board.i_different:
         _elsewhere(board, amounts)
 
 
 def pair_wrong_way(board: Board) -> None:
     """Entries with the bond, the day and the very amount, booked the wrong way round."""
-    for amounts in board.i_amounts:
+    for amounts in board.i_different:
         payments, entries = _open(board, amounts)
+        if not len(payments):
+            continue
         entries = entries[~board.e_undoes[entries]]
         left, right = _keys(board, ("account", "currency", "bond"), payments, entries, -amounts[payments])
         a, b = keys.only_pairs(left, right)
@@ -107,6 +109,8 @@ def within(order: Order, rows: Array) -> Order:
 def _without_bond(board: Board, amounts: Array, off: int) -> None:
     """No bond told: the kind must not be contradicted, and nothing else may be meant."""
     names = ("account", "currency")
+    if not all(map(len, _open(board, amounts, with_bond=False))):
+        return
     if off == 0:
         for spoken in (True, False):
             payments, entries = _open(board, amounts, with_bond=False)
@@ -127,6 +131,8 @@ def _elsewhere(board: Board, amounts: Array) -> None:
     """Only if nothing else could be meant: nobody else waits for the amount, nor for anything in the bond at either account."""
     for names in (("currency", "bond"), ("account", "bond")):
         payments, entries = _open(board, amounts)
+        if not len(payments):
+            continue
         left, right = _keys(board, names, payments, entries, amounts[payments])
         a, b = keys.only_pairs(left, right)
         good = board.kinds_agree(payments[a], entries[b]) & ~_busy(board, payments, entries, a, b)

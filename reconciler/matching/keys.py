@@ -63,12 +63,14 @@ def occurs(asked: Array, among: Array) -> Array:
     """True for the numbers of `asked` that are among the others; the shorter side is sorted, the longer one looked up in it."""
     if not len(asked) or not len(among):
         return np.zeros(len(asked), np.bool_)
-    if len(among) <= len(asked):
+    if len(among) <= len(asked) // 8:
         ordered = np.sort(among)
         place = np.minimum(np.searchsorted(ordered, asked), len(ordered) - 1)
         return np.asarray(ordered[place] == asked)
     order = np.argsort(asked)
     ordered = asked[order]
+    # looking up sorted numbers one after the other keeps to one place in memory
+    among = among if len(asked) <= len(among) // 8 else np.sort(among)
     first = np.searchsorted(ordered, among)
     hit = ordered[np.minimum(first, len(ordered) - 1)] == among
     found = np.zeros(len(asked), np.bool_)
