@@ -66,12 +66,15 @@ class Studio:
         self.theme.start("light")
         mornings = loading.sample_mornings()
         self.morning = sample or mornings[min(1, len(mornings) - 1)]
+        self._new_window = MainWindow
         self.window = MainWindow()
 
     def draw_all(self) -> None:
         """Every state in both themes."""
         for name in ("light", "dark"):
             self.theme.choose(name)
+            self.window.close()
+            self.window = self._new_window()
             if self.readme:
                 self._load()
                 self._page("breaks", "working", size=WIDE)
@@ -136,7 +139,6 @@ class Studio:
         page.show_all()
         if page.table.model().rowCount():
             page.table.go_to(self._telling(page.table.model()) if tab else 0)
-            page.table.scrollToTop()
         if tab:
             page.show_tab(tab)
         elif hasattr(page, "show_tab"):
@@ -148,11 +150,10 @@ class Studio:
     def _telling(model: Any) -> int:
         """A row whose cause is proved and has a working worth looking at."""
         why = next((i for i, column in enumerate(model.sheet.columns) if column.key == "why"), -1)
-        for row in range(min(model.rowCount(), 200)):
-            cell = model.cell(row, why)
-            if cell.glyph == "✓" and "trade" not in cell.text and "digit" not in cell.text.lower():
-                return row
-        return 0
+        first = range(min(model.rowCount(), 6))
+        proved = [row for row in first if model.cell(row, why).glyph == "✓"]
+        likely = [row for row in first if model.cell(row, why).glyph == "≈"]
+        return (proved + likely + [0])[0]
 
     def _empty(self) -> Any:
         self._show()

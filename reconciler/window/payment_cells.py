@@ -20,6 +20,7 @@ MISSING_WORDS = {
     "no ticket": "no ticket",
     "no cash": "no cash",
 }
+_SAY_ALL = ("no confirmation", "no ticket", "no cash", "unexplained cash", "told twice", "unknown bond", "unsound terms")
 DATE_KINDS = ("settlement date", "payment date", "trade date")
 CERTAINTY_TONES = {"proved": "proved", "likely": "day", "open": "soft"}
 CERTAINTY_WORDS = {"proved": "proved to the {unit}", "likely": "likely", "open": "open"}
@@ -190,7 +191,7 @@ def why_cells(data: Payments, at: Rows) -> list[Cell]:
         if more[i] > 0:
             small += f"  ·  {figures.count(more[i], 'more break')}"
         # without a cause the kind stands first, and the sentence about it after the certainty
-        text = causes[i] or kind
+        text = causes[i] or (kind if kind in _SAY_ALL else f"{kind} differs")
         text = text[:1].upper() + text[1:]
         if not causes[i] and sentences[i] and not data.searching:
             small += f"  ·  {sentences[i]}"

@@ -135,9 +135,6 @@ def working(loaded: Loaded, row: int) -> Shown:
     look = {"proved": "differ", "likely": "day", "open": "silent"}.get(certainty, "")
     words = {"proved": "Proved. ", "likely": "Likely. ", "open": "Open. "}.get(certainty, "")
     more = [*told.notes, *(_others(loaded, first["row"]) if first else ())]
-    if len(found) > 1:
-        more.append(f"{figures.count(len(found) - 1, 'other break')} on this payment: "
-                    + ", ".join(sorted({one["break"] for one in found[1:]})) + ".")  # fmt: skip
     sentence = (first["cause"] or first["explanation"]) if first else "Everybody who speaks agrees with this."
     if first and first["cause"] and first["explanation"]:
         more.insert(0, first["explanation"])

@@ -43,6 +43,7 @@ class DetailPane(QFrame):
         self.working = _list("Working")
         self.coupons = _list("Coupons of this bond")
         self.strip, self.wide_strip = CouponStrip(), CouponStrip()
+        self.strip_head = label("Coupons of this bond", "caption")
         self.proof, self.next_step = Notice(), label("", "", wrap=True, selectable=True)
         self.next_head, self.next_here = label("What next", "caption"), label("", "", wrap=True, selectable=True)
         self.differs = QVBoxLayout()
@@ -135,6 +136,8 @@ class DetailPane(QFrame):
         shown = behind.working(loaded, self._row)
         self.working.set_sheet(shown.sheet)
         self.strip.show_strip(shown.strip)
+        for piece in (self.strip_head, self.strip):
+            piece.setVisible(len(shown.strip.boundaries) > 1)
         self.proof.say(shown.found, shown.found_more, shown.look)
         self.next_step.setText(shown.next_step or "Nothing needs to be done.")
 
@@ -142,6 +145,7 @@ class DetailPane(QFrame):
         sheet, strip = behind.coupons(loaded, self._row)
         self.coupons.set_sheet(sheet)
         self.wide_strip.show_strip(strip)
+        self.wide_strip.setVisible(len(strip.boundaries) > 1)
 
     def _accounts_page(self) -> QWidget:
         page = QWidget()
@@ -179,7 +183,7 @@ class DetailPane(QFrame):
         column.addWidget(label("What next", "caption"))
         column.addWidget(self.next_step)
         column.addSpacing(4)
-        column.addWidget(label("Coupons of this bond", "caption"))
+        column.addWidget(self.strip_head)
         column.addWidget(self.strip)
         column.addStretch(1)
         line.addWidget(scrolled(inner, "What was found and what next"), 5)
