@@ -37,7 +37,11 @@ REDEMPTIONS: dict[str, str] = {
 
 @dataclass(frozen=True)
 class Schedule:
-    """One bond's payments on a face in minor units: `coupons` (schema COUPONS), `redemptions` (schema REDEMPTIONS)."""
+    """One bond's payments on a face in minor units.
+
+    `coupons` has the columns of COUPONS and the days interest is `counted_from` and `counted_to` (adjusted where the terms adjust);
+    `redemptions` has those of REDEMPTIONS.
+    """
 
     bond: str
     description: str
@@ -67,9 +71,12 @@ def read(bond: str, path: Path, face: str = "") -> Schedule:
         raise KnownError(*([fault for fault in unsound if fault.line == line] if line else faults))
     digits = int(terms.currency_digits[row])
     face_minor = _face(face, digits, terms.currency[row])
+    coupons = coupon_table(terms, row, face_minor)
+    counted = schedules.period_ending(terms, np.full(len(coupons), row), coupons["end"])
+    coupons = coupons.with_columns(counted_from=counted.accrual_start, counted_to=counted.accrual_end)
     return Schedule(
-        bond.strip(), bonds["description"].text(row), terms.currency[row], digits, face_minor,
-        coupon_table(terms, row, face_minor), redemption_table(terms, row, face_minor),
+        bond.strip(), bonds["description"].text(row), terms.currency[row], digits, face_minor, coupons,
+        redemption_table(terms, row, face_minor),
     )  # fmt: skip
 
 
@@ -123,7 +130,7 @@ def lines(schedule: Schedule) -> list[str]:
     out = [f"{title}, on a face of {schedule.currency} {to_text([schedule.face_minor], schedule.digits)[0]}"]
     days = np.where(coupons["days"] == MISSING, "-", coupons["days"].astype(str))
     columns = [
-        _dates(coupons["start"]), _dates(coupons["end"]), _dates(coupons["end"]), _dates(coupons["payment_date"]),
+        _dates(coupons["counted_from"]), _dates(coupons["counted_to"]), _dates(coupons["end"]), _dates(coupons["payment_date"]),
         days.tolist(), _amounts(coupons["amount_minor"], schedule.digits),
         _dates(coupons["ex_date"]), _dates(coupons["record_date"]), coupons["why"].to_list(),
     ]  # fmt: skip
