@@ -21,7 +21,8 @@ Array = np.ndarray[Any, Any]
 EARLY, LATE = 5, 10
 # Natural logarithms of the proportion between booked and expected amount.
 _FAR, _FAR_IF_SURE = float(np.log(3)), float(np.log(15))
-_PER_DAY, _MARGIN = 0.03, 0.4
+# Nearness counts in powers of ten: to be preferred, an amount must be about three times as near; ten days weigh like one power.
+_PER_DAY, _MARGIN, _NEAREST = 0.1, 0.5, 1e-5
 # A bank charge, in the smallest unit. A share of the amount would be too wide: on a morning of thousands some stranger is always near.
 _CHARGE, _CHARGE_SHARE = 3000, 0.05
 
@@ -62,7 +63,8 @@ def _with_bond(board: Board) -> None:
     # A digit lost in front makes any proportion; kind and day together then say enough, if nothing else comes near.
     limit = np.where(spoken & on_its_day, np.inf, np.where(spoken | on_its_day, _FAR_IF_SURE, _FAR))
     keep = (days >= -EARLY) & (days <= LATE) & board.kinds_agree(payment, entry) & np.isfinite(far) & (far <= limit)
-    payment, entry, cost = payment[keep], entry[keep], (far + _PER_DAY * np.abs(days.astype(float)) - 0.2 * spoken)[keep]
+    payment, entry, days = payment[keep], entry[keep], days[keep]
+    cost = np.log10(far[keep] + _NEAREST) + _PER_DAY * np.abs(days)
     _take_clear(board, payment, entry, cost)
 
 
@@ -71,7 +73,7 @@ def _take_clear(board: Board, payment: Array, entry: Array, cost: Array) -> None
     while len(payment):
         chosen = keys.clear((payment, entry), cost, _MARGIN)
         if not len(chosen):
-            return
+            break
         board.take(payment[chosen], entry[chosen])
         rest = board.i_open[payment] & board.e_open[entry]
         payment, entry, cost = payment[rest], entry[rest], cost[rest]

@@ -59,3 +59,16 @@ def test_with_the_bond_told(entry: Change, found: bool) -> None:
 )
 def test_without_any_name(entry: Change, found: bool) -> None:
     assert who(trades({}), entries(entry)) == ({"E1": ["trade T1"]} if found else {})
+
+
+def test_the_clearly_nearer_of_two_amounts() -> None:
+    """One is fifteen cents off on its day, the other six percent and two days."""
+    items = trades({"terms_minor": -16_178_336}, {"terms_minor": -15_207_477, "terms_date": "2026-03-28"})
+    assert who(items, entries({"bond": BOND, "amount_minor": -16_178_351})) == {"E1": ["trade T1"]}
+    assert who(items, entries({"bond": BOND, "amount_minor": -15_700_000})) == {}
+
+
+def test_what_is_gone_makes_the_next_one_clear() -> None:
+    items = trades({"terms_minor": -1_000_000}, {"terms_minor": -1_001_000})
+    cash = entries({"bond": BOND, "amount_minor": -1_000_010}, {"bond": BOND, "amount_minor": -1_400_000})
+    assert who(items, cash) == {"E1": ["trade T1"], "E2": ["trade T2"]}
