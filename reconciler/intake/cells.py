@@ -21,7 +21,7 @@ import pyarrow.compute as pc
 from reconciler.records import MISSING, Words
 
 NAT = np.datetime64("NaT", "D")
-_SPACES = str.maketrans({c: "" for c in " \u00a0\u202f\u2009'’_"})
+_SPACES = str.maketrans(dict.fromkeys(" \xa0\u202f\u2009'’_", ""))
 _PLAIN = r"^-?\d{1,13}(\.\d{1,4})?$"
 
 

@@ -17,12 +17,11 @@ import pyarrow.compute as pc
 
 from reconciler.intake import cells, layouts
 from reconciler.intake.layouts import Layout
-from reconciler.intake.own import BAD_SIDE, BAD_STATUS, superseded
+from reconciler.intake.own import BAD_SIDE, BAD_STATUS, losing
 from reconciler.intake.reading import load, unreadable
 from reconciler.intake.sheet import Sheet
 from reconciler.money import MISSING, known_currency, minor_digits
-from reconciler.problems import Problem
-from reconciler.records import CONFIRMATIONS, STATUSES, Table, Words
+from reconciler.records import CONFIRMATIONS, STATUSES, Table, Words, concat
 
 NUMBERS = ("face", "price", "accrued", "principal", "fees", "settlement_amount", "yield")
 DATES = ("trade_date", "settlement_date")
@@ -266,8 +265,6 @@ def _typed(sheet: Sheet, style: Style, known: Known) -> Table:
     columns["side"] = columns["side"].astype(np.int8)
     sheet.amount = np.where(settlement == MISSING, 0, settlement)
     _check(sheet, style, columns)
-    superseded(sheet, columns, ("broker", "broker_reference"), keep_equal=True)
-    sheet.set_aside(np.flatnonzero(columns["status"] == STATUSES["cancelled"]))
     whole = Table({**columns, **sheet.places()})
     return Table({name: whole[name] for name in CONFIRMATIONS}).take(sheet.used())
 
@@ -311,6 +308,19 @@ def _currencies(sheet: Sheet, style: Style, bond: Words, known: Known) -> Words:
     return sheet.currency
 
 
-def problem_row(problem: Problem) -> Problem:
-    """The problem of a file as the reject of the whole file."""
-    return problem
+def in_force(tables: Sequence[Table], sheets: Sequence[Sheet]) -> Table:
+    """The confirmations of all files that stand: cancelled beats amended beats new, whichever file says so.
+
+    What is cancelled, or beaten by another row of the same broker and reference, is set aside in its sheet.
+    """
+    whole = concat(tables)
+    gone = np.zeros(len(whole), np.bool_)
+    gone[losing(whole.columns, np.arange(len(whole)), ("broker", "broker_reference"), keep_equal=True)] = True
+    gone |= whole["status"] == STATUSES["cancelled"]
+    if not gone.any():
+        return whole
+    first = 0
+    for part, sheet in zip(tables, sheets, strict=True):
+        sheet.set_aside(sheet.used()[gone[first : first + len(part)]])
+        first += len(part)
+    return whole.take(~gone)

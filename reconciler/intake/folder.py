@@ -200,7 +200,7 @@ def _confirmations(
 ) -> Table:
     known = confirmations.Known(tuple(sorted(set(tickets["broker"].values.to_pylist()))), tickets, bonds, same)
     stock = shelf(folder, layouts_from, desk.problems)
-    tables = [table(CONFIRMATIONS)]
+    read_in: list[tuple[Table, Any, Any, dict[str, Any]]] = []
     place = folder / "confirmations"
     for path in sorted(place.iterdir()) if place.is_dir() else []:
         if path.suffix.lower() not in (".csv", ".txt", ".tsv") or path.name.startswith("."):
@@ -210,9 +210,13 @@ def _confirmations(
         except Unreadable as failure:
             desk.unread(failure, path)
             continue
+        read_in.append((found, sheet, style, extras))
+    if not read_in:
+        return table(CONFIRMATIONS)
+    standing = confirmations.in_force([found for found, *_rest in read_in], [sheet for _found, sheet, *_rest in read_in])
+    for _found, sheet, style, extras in read_in:
         desk.keep(sheet, extras, (), style)
-        tables.append(found)
-    return concat(tables[1:]) if len(tables) > 1 else tables[0]
+    return standing
 
 
 def _rejects(problems: Sequence[Problem]) -> Table:

@@ -14,7 +14,22 @@ from reconciler.intake.layouts import is_footer
 from reconciler.intake.sheet import SET_ASIDE, USED, Sheet
 from reconciler.money import MISSING, known_currency, minor_digits
 from reconciler.problems import Problem
-from reconciler.records import BONDS, CASH, CLOSINGS, FACTORS, HOLDINGS, RATES, SIDES, STATUSES, TICKETS, Table, Words, blank_column, concat, unify
+from reconciler.records import (
+    BONDS,
+    CASH,
+    CLOSINGS,
+    FACTORS,
+    HOLDINGS,
+    RATES,
+    SIDES,
+    STATUSES,
+    TICKETS,
+    Table,
+    Words,
+    blank_column,
+    concat,
+    unify,
+)
 
 BAD_SIDE = "is not a side that is known; write buy or sell."
 BAD_STATUS = "is not a status that is known; write new, amended or cancelled."
@@ -145,38 +160,39 @@ def tickets(path: Path, bonds: Table) -> tuple[Table, Own]:
 _AS_TOLD = ("price", "accrued", "fees", "settlement_amount", "face", "yield")
 
 
-def superseded(sheet: Sheet, columns: Mapping[str, Any], key: Sequence[str], keep_equal: bool = False) -> None:
-    """Of several rows with one key, cancelled beats amended beats new; the others are set aside.
+def superseded(sheet: Sheet, columns: Mapping[str, Any], key: Sequence[str]) -> None:
+    """Of several rows with one key, cancelled beats amended beats new; of equal standing the first by content is kept."""
+    sheet.set_aside(losing(columns, sheet.used(), key))
 
-    Rows of equal standing: the first by content is kept, unless `keep_equal` (they are told twice, and reported as that).
-    """
-    rows = sheet.used()
+
+def losing(columns: Mapping[str, Any], rows: np.ndarray, key: Sequence[str], keep_equal: bool = False) -> np.ndarray:
+    """The rows that a row of the same key beats; with `keep_equal` rows of equal standing all stay (they are told twice)."""
+    none = np.zeros(0, np.int64)
     if not len(rows):
-        return
+        return none
     last = columns[key[-1]].codes[rows]
     if len(rows) == len(columns[key[-1]].values) and np.bincount(last[last >= 0], minlength=1).max() <= 1:
-        return
-    ranks = [columns[name].codes[rows].astype(np.int64) for name in key]
+        return none
+    codes = [columns[name].codes[rows].astype(np.int64) for name in key]
     known = np.logical_and.reduce([columns[name].known()[rows] for name in key])
     status = columns["status"][rows].astype(np.int64)
-    # only keys that occur more than once need a closer look
     combined = np.zeros(len(rows), np.int64)
-    for rank in ranks:
-        combined = combined * (int(rank.max()) + 2) + (rank + 1)
+    for code in codes:
+        combined = combined * (int(code.max()) + 2) + (code + 1)
     _values, inverse, counts = np.unique(combined, return_inverse=True, return_counts=True)
+    # only keys that occur more than once need a closer look
     several = (counts[inverse] > 1) & known
     if not several.any():
-        return
+        return none
     some = rows[several]
     group = inverse[several]
-    content = [_ranked(columns[name])[some] for name in sorted(columns) if name != "status"]
+    content = [_ranked(columns[name])[some] for name in sorted(columns) if name not in ("status", "file", "line")]
     order = np.lexsort((*content, -status[several], group))
     some, group, standing = some[order], group[order], status[several][order]
     first = np.ones(len(some), np.bool_)
     first[1:] = group[1:] != group[:-1]
     best = standing[first][np.cumsum(first) - 1]
-    losing = (standing != best) if keep_equal else ~first
-    sheet.set_aside(some[losing])
+    return some[(standing != best) if keep_equal else ~first]
 
 
 def _ranked(column: Any) -> np.ndarray:

@@ -184,3 +184,14 @@ def test_a_layout_is_followed_to_the_letter(tmp_path: Path) -> None:
     row = morning.confirmations.row(2)
     assert (row["broker_reference"], row["side"], row["face_minor"], row["settlement_minor"]) == ("A1", 1, 100000000, 99666667)
     ties_out(morning)
+
+
+def test_a_confirmation_is_cancelled_from_another_file(tmp_path: Path) -> None:
+    folder = mornings.sound(tmp_path)
+    row = 'A1,T-1,27/03/2026,30/03/2026,ZZ0000000016,bought,"1,000,000.00",99.5,"1,666.67",,"996,666.67",USD,cancelled'
+    head = mornings.ORRIN.splitlines()[3] + ",Status"
+    (folder / "confirmations" / "tamarisk_vane_20260330_2.csv").write_text(head + "\n" + row + "\n")
+    morning = intake.read(folder)
+    assert sorted(morning.confirmations["broker_reference"].to_list()) == ["B1", "B2"]
+    assert int(morning.totals["rows_set_aside"].sum()) == 3
+    ties_out(morning)
