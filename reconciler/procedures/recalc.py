@@ -76,11 +76,11 @@ def read(path: Path) -> Listed:
 
 
 def _rows(text: str, name: str) -> list[list[str]]:
-    """The rows that are not blank, from the headings on."""
+    """The rows from the headings on; a line without any cell is none, a line of blank cells is one."""
     mark = reading.delimiter_of(text[:200_000].splitlines()[:60])
     csv.field_size_limit(reading.LONGEST_LINE)
     try:
-        rows = [row for row in csv.reader(io.StringIO(text, newline=""), delimiter=mark) if any(cell.strip() for cell in row)]
+        rows = [row for row in csv.reader(io.StringIO(text, newline=""), delimiter=mark) if len(row) > 1 or "".join(row).strip()]
     except csv.Error as error:
         raise KnownError(f"{name}: cannot be split into columns ({error}).") from None
     for number, row in enumerate(rows):

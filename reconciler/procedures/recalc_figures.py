@@ -95,6 +95,9 @@ def figures(told: Mapping[str, pa.Array], length: int, torn: Sequence[tuple[int,
     digits = asked.terms.currency_digits
     minor = np.where(usable, interest.minor, blank)
     whole = np.where((minor != MISSING) & (principal != MISSING), minor + principal, MISSING)
+    silent = np.ones(length, np.bool_)
+    silent[[row for row, *_ in read.faults]] = False
+    read.fault(silent & (whole == MISSING), "settlement_amount", "is beyond any amount; check face, price and rates.")
     return {
         "previous_coupon": Column("previous_coupon", "date", np.where(usable, interest.previous, NAT)),
         "next_coupon": Column("next_coupon", "date", np.where(usable, interest.next, NAT)),

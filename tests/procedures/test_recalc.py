@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import csv
 import io
+import random
 from pathlib import Path
 
 import pytest
@@ -187,3 +188,26 @@ def test_every_row_alone_as_in_the_list(tmp_path):
     for row, whole in zip(rows, together, strict=True):
         alone = found(tmp_path, row)[0]
         assert {name: whole[name] for name in alone} == alone
+
+
+_DAYS = ["", "2024-02-29", "2024-13-01", "0001-01-01", "9999-12-31", "2199-12-31", "2101-01-03", "1969-12-31", "2030-06-15", "2026-3-1", "abc"]
+_FIGURES = ["", "0", "5", "-1", "0.000000001", "1e5", "999999", "99-16+", "1,000", "1000000000000", "123456789012345678", "NaN", "inf", "101.25"]
+_ODD = {
+    "kind": ["fixed", "", "zero", "stepped", "floating", "linked", "amortising", "x"], "market": ["", "US_TBILL", "UK_GILT", "JP_JGB", "?"],
+    "coupon_rate": ["5", *_FIGURES], "frequency": ["2", "", "0", "1", "12", "3", "-1", "x"], "day_count": ["30/360", "", "Act/Act ICMA", "Bus/252", "x"],
+    "accrual_start": ["2020-06-15", *_DAYS], "first_coupon": ["", *_DAYS], "last_regular_coupon": ["", "", *_DAYS],
+    "maturity": ["2030-06-15", *_DAYS], "calendar": ["", "XSIF", "NOWHERE"], "ex_dividend": ["", "6b", "999c", "x"], "currency": ["", "JPY", "usd"],
+    "accrued_rounding": ["", "100:7 down", "1000000000:12"], "settlement_date": ["2024-07-02", *_DAYS], "face": ["", *_FIGURES],
+    "price": ["99.5", *_FIGURES], "yield": ["", "", *_FIGURES], "discount": ["", "", *_FIGURES],
+    "yield_convention": ["", "treasury", "simple", "annual", "discount", "investment", "x"], "factor": ["", "0", "0.5", "-1"],
+}  # fmt: skip
+
+
+@pytest.mark.parametrize("seed", range(12))
+def test_whatever_stands_in_the_cells(seed, tmp_path):
+    """No cell breaks the list: each row comes back with a settlement amount or with a reason why there is none."""
+    rng = random.Random(seed)
+    oddness = rng.random()
+    rows = [{name: rng.choice(cells) if rng.random() < oddness else cells[0] for name, cells in _ODD.items()} for _ in range(50)]
+    for row in found(tmp_path, *rows):
+        assert row["settlement_amount"] or row["problem"], row
