@@ -2,7 +2,7 @@
 
 The reference is tried whole first (a ticket number may itself contain blanks or slashes), then in its words. Narratives are read word
 by word, only of entries whose reference does not settle them already. A name counts when account, currency, bond or amount do not
-all speak against it; a bare number in a narrative needs the account, the currency and an amount of the same size, because any number
+all speak against it; a bare number among other words needs the account, the currency and an amount of the same size, because any number
 may stand there.
 """
 
@@ -27,7 +27,7 @@ Array = np.ndarray[Any, Any]
 _MOST = 64
 _PUNCTUATION = ".,;:()[]{}<>\"'#!?*=/"
 # Signs that join names, and those that join names or stand inside one (26/00133;26/00190).
-_INNER = (r"[+;,:=|&]", r"[/+;,:=|&]")
+_INNER = (r"[+;,:=|&#]", r"[/+;,:=|&#]", r"[/+;,:=|&#_-]")
 
 
 @dataclass(frozen=True)
@@ -98,13 +98,13 @@ def name(board: Board, numbers: Words) -> Named:
     for entry, payment in told:
         settled[entry[board.fits(payment, board.e_amount[entry])]] = True
     into: list[_Dictionary] = []
-    for column, skip, trusted in (("reference", done, [anything, anything]), ("narrative", settled, wordy)):
+    for column, skip in (("reference", done), ("narrative", settled)):
         rows = np.flatnonzero((cash[column].codes >= 0) & board.e_open & ~skip)
         if not len(rows):
             continue
         into = into or [one.folded() for one in (*dictionaries, bonds)]
         found = _in_words(cash[column].take(rows), into, rows)
-        told += [_sound(board, pairs, trust) for pairs, trust in zip(found[:2], trusted, strict=True)]
+        told += [_sound(board, pairs, trust) for pairs, trust in zip(found[:2], wordy, strict=True)]
         named_bonds.append(found[2])
     return Named(_distinct(told, len(items)), _bonds(board, named_bonds))
 
@@ -144,7 +144,7 @@ def _in_words(texts: Words, into: Sequence[_Dictionary], rows: Array) -> list[Pa
 
 
 def _words(values: Any) -> tuple[Array, Any]:
-    """The words of distinct texts, in capitals, that may be a name (four characters, a digit), and which text each is of."""
+    """The words of distinct texts, in capitals, that may be a name, and which text each is of: letters with digits, or four digits."""
     parts = pc.utf8_split_whitespace(pc.utf8_upper(values))
     owners, words = pc.list_parent_indices(parts).to_numpy(), pc.utf8_trim(parts.flatten(), _PUNCTUATION)
     whole_owners, whole_words = owners, words
@@ -156,7 +156,7 @@ def _words(values: Any) -> tuple[Array, Any]:
             owners = np.concatenate((owners, whole_owners[inner]))
             words = pa.concat_arrays([words, pc.utf8_trim(split.flatten(), _PUNCTUATION)])
     keep = pc.match_substring_regex(words, "[0-9]").to_numpy(zero_copy_only=False)
-    keep &= pc.greater_equal(pc.utf8_length(words), 4).to_numpy(zero_copy_only=False)
+    keep &= pc.or_(pc.match_substring_regex(words, "[^0-9]"), pc.greater_equal(pc.utf8_length(words), 4)).to_numpy(zero_copy_only=False)
     kept = np.flatnonzero(keep)
     return owners[kept], words.take(pa.array(kept))
 
