@@ -13,8 +13,8 @@ import pyarrow as pa
 import pyarrow.compute as pc
 import pyarrow.csv as pacsv
 
-from reconciler.bonds import settlement
 from reconciler import texts as text
+from reconciler.bonds import settlement
 from reconciler.expected.terms import resolve_terms
 from reconciler.intake import folder as intake
 from reconciler.records import CLOSINGS, FACTORS, RATES, table

@@ -16,7 +16,7 @@ import numpy as np
 HERE = Path(__file__).resolve().parent
 sys.path.insert(0, str(HERE.parent))
 
-from reconciler.bonds import closed_days  # noqa: E402
+from reconciler.bonds import closed_days
 
 CODES = """
     XSIF XFED XECB XLON XNYS XASX XMEX XNSE XSES XHKG XJPX XSWX XTSE XWAR XNZE ENX US GB-ENG GB-SCT GB-NIR JP

@@ -55,7 +55,7 @@ def _stamp(extra: str) -> str:
 
 def environment(extra: str = "") -> None:
     """Makes `.venv` and installs the project (with an extra, such as test) unless that is done already."""
-    if sys.version_info < (3, 11):
+    if sys.version_info < (3, 11):  # noqa: UP036 - this very script runs on whatever is there
         stop("Reconciler needs Python 3.11 or newer; this is " + sys.version.split()[0] + ".")
     mark = VENV / f"installed{'-' + extra if extra else ''}.txt"
     if mark.exists() and mark.read_text() == _stamp(extra) and python().exists():

@@ -60,6 +60,7 @@ ACTIONS: tuple[Action, ...] = (
            divided=True),
     Action("working", "Working", "List", "Show how the payment is reckoned, line by line", ("Alt+2",), needs_day=True),
     Action("coupons", "Coupons", "List", "Show the bond's coupons", ("Alt+3",), needs_day=True),
+    Action("letter", "&Letter…", "List", "Draft a letter about this payment to whoever has to put it right", ("L",), needs_day=True),
     Action("pane", "Next &pane", "View", "Move between navigation, search, list and detail", ("F6",)),
     Action("pane_back", "Previous pane", "View", "Move back between the panes", ("Shift+F6",)),
     Action("back", "&Back", "View", "Leave the detail or the search; in the list, show all rows", ("Esc",)),

@@ -54,6 +54,12 @@ def _layout(window: MainWindow) -> None:
     ask_layout(window)
 
 
+def _letter(window: MainWindow) -> None:
+    from reconciler.window.dialogs.letter import ask_letter
+
+    ask_letter(window)
+
+
 def _export(window: MainWindow) -> None:
     from reconciler.window.dialogs.export import ask_export
 
@@ -155,7 +161,7 @@ def _about(window: MainWindow) -> None:
 
 
 DO: dict[str, Callable[[MainWindow], None]] = {
-    "open": _open, "sample": _sample, "reload": _reload, "layout": _layout, "problems": _problems, "export": _export,
+    "open": _open, "sample": _sample, "reload": _reload, "layout": _layout, "problems": _problems, "export": _export, "letter": _letter,
     "quit": lambda window: (window.close(), None)[1], "find": _find, "copy": _copy, "all": _all, "next": _step(1),
     "previous": _step(-1), "detail": _detail, "accounts": _tab("accounts"), "working": _tab("working"),
     "coupons": _tab("coupons"), "pane": _pane(1), "pane_back": _pane(-1), "back": _back, "split": _split,

@@ -138,7 +138,7 @@ def test_bad_input_gets_one_clear_sentence(
 def test_a_folder_without_tickets_cannot_be_reconciled(tmp_path: Path) -> None:
     folder = mornings.sound(tmp_path)
     (folder / "tickets.csv").unlink()
-    with pytest.raises(KnownError, match="tickets.csv"):
+    with pytest.raises(KnownError, match=r"tickets\.csv"):
         intake.read(folder)
     with pytest.raises(KnownError, match="no folder"):
         intake.read(tmp_path / "nowhere")

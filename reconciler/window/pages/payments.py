@@ -32,6 +32,7 @@ class PaymentsPage(Page):
         self.splitter.setSizes([372, 412])
         self.column.addWidget(self.splitter, 1)
         self._loaded: Any = None
+        self._item = -1
         self.table.current_changed.connect(self._show_detail)
         self.row_opened.connect(lambda _row: self.open_detail())
 
@@ -95,8 +96,13 @@ class PaymentsPage(Page):
             return True
         return super().back()
 
+    def current_item(self) -> int:
+        """The row in the items of the payment the list stands on, -1 none."""
+        return self._item
+
     def _show_detail(self, row: int) -> None:
         if self._loaded is None:
             return
         item_row = int(self.sheet.data.rows[row]) if row >= 0 and self.sheet is not None else -1
+        self._item = item_row
         self.detail.show_row(self._loaded, item_row)

@@ -23,7 +23,7 @@ def _scored(folder: Path, payments: int, seed: int, pairs: bool, report: object)
     make_faults.make(folder, payments, seed, pairs)
     found, wrongs = scoring.scores(folder)
     print(scoring.printed(found), *wrongs[:40], sep="\n")
-    return scoring.Score(*(sum(getattr(s, name) for s in found.values()) for name in vars(scoring.Score()).keys()))
+    return scoring.Score(*(sum(getattr(s, name) for s in found.values()) for name in vars(scoring.Score())))
 
 
 @pytest.mark.parametrize(("payments", "seed"), [(500, 21), pytest.param(10_000, 22, marks=pytest.mark.long)])
