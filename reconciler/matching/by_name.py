@@ -163,6 +163,13 @@ def _part_of_payments(board: Board, entry: int, payments: Array) -> None:
     payments = payments[np.argsort(board.item_order(payments), kind="stable")]
     expected = board.i_expected[payments]
     amount = board.e_amount[entry]
+    unknown = payments[expected == MISSING]
+    if len(unknown):
+        # what the known ones leave is for the first whose amount nobody knows
+        known = payments[expected != MISSING]
+        rest = amount - int(board.i_expected[known].sum())
+        board.take(np.append(known, unknown[0]), np.full(len(known) + 1, entry), np.append(board.i_expected[known], rest))
+        return
     single = payments[board.fits(payments, np.full(len(payments), amount))]
     chosen = single if len(single) == 1 else payments
     if not len(single) and len(payments) <= MOST:

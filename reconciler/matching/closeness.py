@@ -32,6 +32,7 @@ def pair_close(board: Board) -> None:
     hidden = shadows(board)
     board.e_open[hidden] = False
     _with_bond(board)
+    _of_unknown_amount(board)
     _without_bond(board)
     board.e_open[hidden] = True
 
@@ -66,6 +67,21 @@ def _with_bond(board: Board) -> None:
     payment, entry, days = payment[keep], entry[keep], days[keep]
     cost = np.log10(far[keep] + _NEAREST) + _PER_DAY * np.abs(days)
     _take_clear(board, payment, entry, cost)
+
+
+def _of_unknown_amount(board: Board) -> None:
+    """Payments whose amount nobody knows (a rate not fixed): the only entry of the account, currency and bond near the day."""
+    payments, entries = board.open()
+    payments = payments[(board.i_bond[payments] >= 0) & (board.i_expected[payments] == MISSING)]
+    entries = entries[board.e_bond[entries] >= 0]
+    if not len(payments):
+        return
+    a, b = keys.only_pairs(*(keys.mixed(getattr(board, f"{side}_{n}")[rows] for n in ("account", "currency", "bond"))
+                             for side, rows in (("i", payments), ("e", entries))))  # fmt: skip
+    payment, entry = payments[a], entries[b]
+    days = board.days_late(payment, entry)
+    keep = (days >= -EARLY) & (days <= LATE) & board.kinds_agree(payment, entry)
+    board.take(payment[keep], entry[keep])
 
 
 def _take_clear(board: Board, payment: Array, entry: Array, cost: Array) -> None:

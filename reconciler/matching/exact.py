@@ -33,6 +33,8 @@ def pair_exact(board: Board) -> None:
     for off in (0, 1, -1):
         for amounts in board.i_different:
             _without_bond(board, amounts, off)
+    for amounts in board.i_different:
+        _accountless(board, amounts)
 
 
 def pair_elsewhere(board: Board) -> None:
@@ -125,6 +127,17 @@ def _without_bond(board: Board, amounts: Array, off: int) -> None:
     a, b = keys.only_pairs(left, right)
     good = board.kinds_agree(payments[a], entries[b])
     _take_near(board, payments[a][good], entries[b][good], 3, 7)
+
+
+def _accountless(board: Board, amounts: Array) -> None:
+    """Payments whose account nobody told: on any account, only if nothing else could be meant."""
+    for names in (("currency", "bond"), ("currency",)):
+        payments, entries = _open(board, amounts, with_bond="bond" in names)
+        payments = payments[board.i_account[payments] < 0]
+        if len(payments):
+            a, b = keys.only_pairs(*_keys(board, names, payments, entries, amounts[payments]))
+            good = board.kinds_agree(payments[a], entries[b])
+            _take_near(board, payments[a][good], entries[b][good], 3, 7)
 
 
 def _elsewhere(board: Board, amounts: Array) -> None:

@@ -19,7 +19,7 @@ import pyarrow.compute as pc
 from reconciler.matching import keys
 from reconciler.matching.board import Board
 from reconciler.matching.keys import NO_PAIRS, Pairs
-from reconciler.records import MISSING, Words
+from reconciler.records import Words
 
 Array = np.ndarray[Any, Any]
 
@@ -76,7 +76,7 @@ class _Dictionary:
 def name(board: Board, numbers: Words) -> Named:
     """What every entry names; `numbers` are the payments' ticket numbers. Also gives entries that told no bond the one bond they name."""
     items, cash = board.items, board.cash
-    waiting = np.flatnonzero((board.i_open | board.silent) & (board.i_expected != MISSING))
+    waiting = np.flatnonzero(board.i_open | board.silent)
     loud = waiting[~board.silent[waiting]]
     # A ticket told twice is paid only where the bank names its own number.
     dictionaries = [_Dictionary(numbers.take(waiting), waiting), _Dictionary(items["broker_reference"].take(loud), loud)]

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import pytest
 
+from reconciler.records import MISSING
 from tests.matching.hand import BOND, OTHER, E, booked, coupons, entries, paid, told_twice, trades, who
 
 
@@ -56,3 +57,11 @@ def test_a_wrong_amount_told_twice() -> None:
     cash = entries({"bond": BOND, "amount_minor": 1_700_000}, {"bond": BOND, "amount_minor": 1_700_000})
     assert who(coupons({}), cash) == {"E1": ["coupon 1"]}
     assert told_twice(coupons({}), cash) == {("E2", "E1")}
+
+
+def test_a_named_payment_whose_amount_nobody_knows() -> None:
+    items = trades({"ticket": "T0001"}, {"ticket": "T0002", "terms_minor": MISSING}, {"ticket": "T0003", "terms_minor": MISSING})
+    assert paid(items, entries({"reference": "T0002", "amount_minor": -777})) == {"E1": {"trade T2": -777}}
+    assert paid(items, entries({"reference": "T0001 T0002", "amount_minor": E - 777})) == {"E1": {"trade T1": E, "trade T2": -777}}
+    cash = entries({"reference": "T0002", "amount_minor": -777}, {"reference": "T0002", "amount_minor": -223})
+    assert paid(items, cash) == {"E1": {"trade T2": -777}, "E2": {"trade T2": -223}}

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import pytest
 
-from reconciler.records import concat
+from reconciler.records import MISSING, concat
 from tests.matching.hand import BOND, Change, E, coupons, entries, trades, who
 
 
@@ -72,3 +72,10 @@ def test_what_is_gone_makes_the_next_one_clear() -> None:
     items = trades({"terms_minor": -1_000_000}, {"terms_minor": -1_001_000})
     cash = entries({"bond": BOND, "amount_minor": -1_000_010}, {"bond": BOND, "amount_minor": -1_400_000})
     assert who(items, cash) == {"E1": ["trade T1"], "E2": ["trade T2"]}
+
+
+def test_a_payment_whose_amount_nobody_knows() -> None:
+    items = coupons({"terms_minor": MISSING})
+    assert who(items, entries({"bond": BOND, "amount_minor": 1_234_500, "narrative": "COUPON"})) == {"E1": ["coupon 1"]}
+    assert who(items, entries({"bond": BOND, "amount_minor": 1_234_500, "narrative": "SALE"})) == {}
+    assert who(items, entries({"bond": BOND, "amount_minor": 5}, {"bond": BOND, "amount_minor": 6})) == {}

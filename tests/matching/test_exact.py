@@ -60,3 +60,9 @@ def test_a_late_payment_without_a_known_day_is_left() -> None:
     items = trades({"terms_date": "NaT"})
     assert who(items, entries({"bond": BOND})) == {}
     assert who(items, entries({"reference": "T1"})) == {"E1": ["trade T1"]}
+
+
+@pytest.mark.parametrize("entry", [{"bond": BOND}, {}, {"bond": BOND, "value_date": "2026-03-30"}], ids=str)
+def test_a_payment_whose_account_nobody_told(entry: Change) -> None:
+    assert who(trades({"account": ""}), entries(entry)) == {"E1": ["trade T1"]}
+    assert who(trades({"account": ""}), entries(entry, {**entry, "account": "BIRCH-2"})) == {}
