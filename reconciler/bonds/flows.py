@@ -142,8 +142,7 @@ class _YieldGrid(Grid):
 
 def _places(terms: Terms, rows: Array, grid: Grid, dates: Array) -> Array:
     """Each date's place on the grid, in periods, growing with time."""
-    k = grid.number_at_or_before(dates)
-    low, high = grid.at(k), grid.at(k - 1)
+    k, low, high = grid.around(dates)
     share = (dates - low).astype(np.float64) / np.maximum((high - low).astype(np.float64), 1)
     day_count = terms.day_count[rows]
     t = np.flatnonzero(_THIRTY[day_count] & (terms.frequency[rows] > 0) & (dates > low))

@@ -28,15 +28,11 @@ def month_number(dates: Array) -> tuple[Array, Array]:
     return (year.astype(np.int64) - 1970) * 12 + (month - 1), day.astype(np.int64)
 
 
-def day_of_month(month: Array, day: Array, month_end: Array) -> Array:
-    """The day of a month, the last one where the month has no such day or month ends are kept."""
+def day_of_month(month: Array, day: Array) -> Array:
+    """The day of a month, the last one where the month has no such day."""
     place = np.clip(month - _FIRST_MONTH, 0, len(_STARTS) - 2)
     first = _STARTS[place]
-    length = _STARTS[place + 1] - first
-    wanted = np.minimum(day, length)
-    if month_end.any():
-        wanted = np.where(month_end, length, wanted)
-    result: Array = (first + wanted - 1).view("datetime64[D]")
+    result: Array = (np.minimum(first + day, _STARTS[place + 1]) - 1).view("datetime64[D]")
     return result
 
 
@@ -44,20 +40,30 @@ class Grid:
     """The coupon grid of some rows: `at(k)` is the date k periods before the anchor (negative k: after it)."""
 
     def __init__(self, terms: Terms, rows: Array) -> None:
-        self.month, self.day = month_number(terms.anchor[rows])
+        self.month, day = month_number(terms.anchor[rows])
+        # the 31st of every month is its last day
+        self.day = np.where(terms.end_of_month[rows], 31, day)
         # bonds without coupons have a yearly grid, on which yields count
         self.step = (12 // np.maximum(terms.frequency[rows], 1)).astype(np.int64)
-        self.month_end = terms.end_of_month[rows]
 
     def at(self, k: Array) -> Array:
         """Grid date number k of each row."""
-        return day_of_month(self.month - k * self.step, self.day, self.month_end)
+        return day_of_month(self.month - k * self.step, self.day)
 
     def number_at_or_before(self, dates: Array) -> Array:
         """The smallest k whose date is on or before each day."""
         month, _day = month_number(dates)
         k = -((month - self.month) // self.step)
         return k + (self.at(k) > dates)
+
+    def around(self, dates: Array) -> tuple[Array, Array, Array]:
+        """For each day the smallest k whose date is on or before it, that date, and the next grid date (k - 1)."""
+        month, _day = month_number(dates)
+        k = -((month - self.month) // self.step)
+        near = self.at(k)
+        over = near > dates
+        other = self.at(np.where(over, k + 1, k - 1))
+        return k + over, np.where(over, other, near), np.where(over, near, other)
 
 
 def grid_after(terms: Terms, rows: Array, dates: Array) -> Array:

@@ -24,6 +24,9 @@ from reconciler.money import MISSING
 
 Array = np.ndarray[Any, Any]
 
+_BONDS = 4_096
+"""Bonds whose schedules are made at once."""
+
 
 @dataclass(frozen=True)
 class Periods:
@@ -55,32 +58,37 @@ def periods_at(terms: Terms, rows: Array, dates: Array) -> Periods:
     period. Without an accrual start the grid runs back without end.
     """
     rows, dates = np.asarray(rows), np.asarray(dates, "datetime64[D]")
-    grid = Grid(terms, rows)
-    with_first = terms.first_coupon[rows]
-    begin, anchor, maturity = terms.accrual_start[rows], terms.anchor[rows], terms.maturity[rows]
-    k = grid.number_at_or_before(dates)
-    start, end = grid.at(k), grid.at(k - 1)
+    _k, start, end = Grid(terms, rows).around(dates)
     regular = np.ones(len(rows), np.bool_)
-
-    last = dates >= anchor
-    if last.any():
-        start, end = np.where(last, anchor, start), np.where(last, maturity, end)
-        regular &= ~last | (grid.at(np.full(len(rows), -1)) == maturity)
-    first = dates < with_first
-    if first.any():
-        natural = grid.at(grid.number_at_or_before(with_first - 1))
-        exact = (natural == begin) & (grid.at(grid.number_at_or_before(with_first)) == with_first)
-        regular = np.where(first, exact, regular)
-        start, end = np.where(first, begin, start), np.where(first, with_first, end)
-    # A first coupon off the grid opens a broken second period.
-    broken = ~first & (start < with_first)
-    if broken.any():
-        start = np.where(broken, with_first, start)
-        regular &= ~broken
+    maturity = terms.maturity[rows]
+    # stubs and what comes before the first coupon are few: each is put right by itself
+    last = np.flatnonzero(dates >= terms.anchor[rows])
+    if len(last):
+        start[last], end[last] = terms.anchor[rows[last]], maturity[last]
+        regular[last] = Grid(terms, rows[last]).at(np.full(len(last), -1)) == maturity[last]
+    first_coupon = terms.first_coupon[rows]
+    early = np.flatnonzero(start < first_coupon)
+    if len(early):
+        _first_periods(terms, rows[early], dates[early], early, start, end, regular)
     none = (terms.frequency[rows] == 0) | (dates >= maturity) | np.isnat(dates) | ~terms.sound[rows]
     if none.any():
         start, end = np.where(none, NAT, start), np.where(none, NAT, end)
     return _accrual(terms, rows, start, end, regular)
+
+
+def _first_periods(
+    terms: Terms, rows: Array, dates: Array, places: Array, start: Array, end: Array, regular: Array
+) -> None:
+    """Puts right, at `places`, the periods that begin before the first coupon."""
+    first, begin = terms.first_coupon[rows], terms.accrual_start[rows]
+    grid = Grid(terms, rows)
+    _k, natural, _next = grid.around(first - 1)
+    exact = (natural == begin) & (grid.at(grid.number_at_or_before(first)) == first)
+    before = dates < first
+    # a first coupon off the grid opens a broken second period
+    start[places] = np.where(before, begin, first)
+    end[places] = np.where(before, first, end[places])
+    regular[places] = before & exact
 
 
 def _accrual(terms: Terms, rows: Array, start: Array, end: Array, regular: Array) -> Periods:
@@ -135,8 +143,7 @@ def parts(terms: Terms, rows: Array, start: Array, end: Array, periods: Periods)
         last_days, last_length = last_days.copy(), last_length.copy()
         grid = Grid(terms, rows[odd])
         x, y = start[odd], end[odd]
-        kx, ky = grid.number_at_or_before(x), grid.number_at_or_before(y)
-        g0, g1, h0, h1 = grid.at(kx), grid.at(kx - 1), grid.at(ky), grid.at(ky - 1)
+        (kx, g0, g1), (ky, h0, h1) = grid.around(x), grid.around(y)
         single = kx == ky
         whole[odd] = np.where(single, 0, kx - ky - 1)
         first_days[odd] = np.where(single, y - x, g1 - x).astype(np.int64)
@@ -200,9 +207,13 @@ def all_coupons(terms: Terms, rows: Array) -> Coupons:
     rows = rows[(terms.frequency[rows] > 0) & terms.sound[rows]]
     begin = terms.accrual_start[rows]
     begin = np.where(np.isnat(begin), np.datetime64("1970-01-01"), begin)
-    places, dates = coupon_dates(terms, rows, begin + 1, terms.maturity[rows])
-    found_rows = rows[places]
-    return Coupons(found_rows, dates, payment_dates(terms, found_rows, dates))
+    parts = []
+    # so many bonds at a time that their coupons stay in the processor's cache
+    for first in range(0, max(len(rows), 1), _BONDS):
+        some = rows[first : first + _BONDS]
+        places, dates = coupon_dates(terms, some, begin[first : first + _BONDS] + 1, terms.maturity[some])
+        parts.append((some[places], dates, payment_dates(terms, some[places], dates)))
+    return Coupons(*(np.concatenate(columns) for columns in zip(*parts, strict=True)))
 
 
 def coupon_dates(terms: Terms, rows: Array, low: Array, high: Array) -> tuple[Array, Array]:
@@ -211,14 +222,13 @@ def coupon_dates(terms: Terms, rows: Array, low: Array, high: Array) -> tuple[Ar
     first = terms.first_coupon[rows]
     low = np.maximum(low, np.where(np.isnat(first), low, first))
     maturity, anchor = terms.maturity[rows], terms.anchor[rows]
-    upper, lower = np.minimum(high, anchor), low
-    k_low = np.maximum(grid.number_at_or_before(upper), 0)
-    k_high = grid.number_at_or_before(lower - 1) - 1
+    k_low = np.maximum(grid.number_at_or_before(np.minimum(high, anchor)), 0)
+    k_high = grid.number_at_or_before(low - 1) - 1
     count = np.maximum(k_high - k_low + 1, 0)
     owner = np.repeat(np.arange(len(rows)), count)
-    within = np.arange(count.sum()) - np.repeat(np.cumsum(count) - count, count)
-    k = np.repeat(k_high, count) - within
-    dates = day_of_month(grid.month[owner] - k * grid.step[owner], grid.day[owner], grid.month_end[owner])
+    within = np.arange(len(owner)) - np.repeat(np.cumsum(count) - count, count)
+    month = np.repeat(grid.month - k_high * grid.step, count) + within * np.repeat(grid.step, count)
+    dates = day_of_month(month, np.repeat(grid.day, count))
     # maturity after a last regular coupon, and a first coupon that the grid does not know
     stub = np.flatnonzero((maturity > anchor) & (maturity >= low) & (maturity <= high))
     on_grid = grid.at(grid.number_at_or_before(first)) == first
