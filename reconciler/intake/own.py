@@ -2,14 +2,17 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Callable, Mapping, Sequence
+from concurrent.futures import ThreadPoolExecutor
 from pathlib import Path
 from typing import Any
 
 import numpy as np
+import pyarrow as pa
 
 from reconciler.bonds import markets
 from reconciler.intake import cells, identifiers, reading
+from reconciler.intake.cells import Cells
 from reconciler.intake.layouts import is_footer
 from reconciler.intake.sheet import SET_ASIDE, USED, Sheet
 from reconciler.money import MISSING, known_currency, minor_digits
@@ -48,6 +51,7 @@ class Own:
         )
         self.sheet = Sheet(raw)
         self.notes: list[Problem] = []
+        self._ready: dict[tuple[str, str], Any] = {}
         self.place = {h.strip().lower(): i for i, h in reversed(list(enumerate(raw.headings)))}
         for column in needed:
             if column not in self.place:
@@ -58,45 +62,50 @@ class Own:
             raise reading.unreadable(name, f"has the column {twice[0]} twice; remove one.", "column-twice", raw.header_line)
         self.extras = {h: raw.columns[i] for i, h in enumerate(raw.headings) if h.strip() and h.strip().lower() not in names}
 
+    def ahead(self, texts: Sequence[str] = (), **readers: Callable[[pa.Array], Cells]) -> None:
+        """Converts columns two at a time: arrow and numpy let go of the interpreter. What is asked for later is ready then."""
+        jobs: dict[tuple[str, str], Callable[[], Any]] = {}
+        for name in texts:
+            jobs["text", name] = lambda name=name: self.sheet.text(self.place.get(name))  # type: ignore[misc]
+        for name, read in readers.items():
+            if name in self.place:
+                jobs["cells", name] = lambda name=name, read=read: read(self.sheet.column(self.place[name]))  # type: ignore[misc]
+        with ThreadPoolExecutor(2) as pool:
+            self._ready |= dict(zip(jobs, pool.map(lambda job: job(), jobs.values()), strict=True))
+
     def text(self, name: str) -> Words:
         """A text column."""
-        return self.sheet.text(self.place.get(name))
+        ready = self._ready.pop(("text", name), None)
+        return self.sheet.text(self.place.get(name)) if ready is None else ready
 
-    def date(self, name: str) -> np.ndarray:
-        """A date column; bad dates reject their rows."""
+    def _typed(self, name: str, read: Callable[[pa.Array], Cells], blank: Any, code: str) -> np.ndarray:
+        """A typed column, `blank` where the file has none; bad cells reject their rows."""
         place = self.place.get(name)
         if place is None:
-            return np.full(len(self.sheet.raw), cells.NAT)
-        return self.sheet.take(cells.dates(self.sheet.column(place), iso=True), place, name, "bad-date")
+            return np.full(len(self.sheet.raw), blank)
+        ready = self._ready.pop(("cells", name), None)
+        return self.sheet.take(read(self.sheet.column(place)) if ready is None else ready, place, name, code)
+
+    def date(self, name: str) -> np.ndarray:
+        """A date column."""
+        return self._typed(name, own_dates, cells.NAT, "bad-date")
 
     def number(self, name: str, places: int) -> np.ndarray:
         """A decimal column times 10^places."""
-        place = self.place.get(name)
-        if place is None:
-            return np.full(len(self.sheet.raw), MISSING)
-        return self.sheet.take(cells.numbers(self.sheet.column(place), places), place, name, "bad-number")
+        return self._typed(name, lambda column: cells.numbers(column, places), MISSING, "bad-number")
 
     def price(self, name: str) -> np.ndarray:
         """A price column times 10^12."""
-        place = self.place.get(name)
-        if place is None:
-            return np.full(len(self.sheet.raw), MISSING)
-        return self.sheet.take(cells.prices(self.sheet.column(place)), place, name, "bad-price")
+        return self._typed(name, cells.prices, MISSING, "bad-price")
 
     def amount(self, name: str, digits: np.ndarray) -> np.ndarray:
         """An amount column in minor units."""
-        place = self.place.get(name)
-        if place is None:
-            return np.full(len(self.sheet.raw), MISSING)
-        return self.sheet.take(cells.amounts(self.sheet.column(place), digits), place, name, "bad-amount")
+        return self._typed(name, lambda column: cells.amounts(column, digits), MISSING, "bad-amount")
 
     def coded(self, name: str, words: Mapping[str, int], blank: int, reason: str) -> np.ndarray:
         """A column of words as int8 codes."""
-        place = self.place.get(name)
-        if place is None:
-            return np.full(len(self.sheet.raw), blank, np.int8)
-        found = cells.coded(self.sheet.column(place), dict(words), blank, reason)
-        return self.sheet.take(found, place, name, f"bad-{name}")
+        read: Callable[[pa.Array], Cells] = lambda column: cells.coded(column, dict(words), blank, reason)  # noqa: E731
+        return self._typed(name, read, np.int8(blank), f"bad-{name}")
 
     def need(self, name: str, known: np.ndarray) -> None:
         """Rejects rows in which a needed fact is blank."""
@@ -107,7 +116,14 @@ class Own:
     def table(self, schema: Mapping[str, str], columns: dict[str, Any]) -> Table:
         """The rows in use as a table of the schema."""
         whole = Table({**columns, **self.sheet.places()})
-        return Table({name: whole[name] for name in schema}).take(self.sheet.used())
+        found = Table({name: whole[name] for name in schema})
+        used = self.sheet.used()
+        return found if len(used) == len(found) else found.take(used)
+
+
+def own_dates(column: pa.Array) -> Cells:
+    """Dates of our own files: year-month-day and nothing else."""
+    return cells.dates(column, iso=True)
 
 
 def currencies(own: Own, told: Words, bond: Words, bonds: Table) -> tuple[Words, np.ndarray]:
@@ -134,8 +150,13 @@ def _negative(own: Own, name: str, values: np.ndarray, reason: str) -> None:
 def tickets(path: Path, bonds: Table) -> tuple[Table, Own]:
     """tickets.csv: one row per ticket in force."""
     own = Own(path, "tickets.csv", ("ticket", "bond", "side", "face"), tuple(TICKETS) + _AS_TOLD)
+    own.ahead(
+        ("bond", "currency", "ticket", "price", "broker", "account", "broker_reference", "yield"),
+        trade_date=own_dates, settlement_date=own_dates, price=cells.prices,
+    )  # fmt: skip
     bond = own.text("bond")
     currency, digits = currencies(own, own.text("currency"), bond, bonds)
+    own.ahead(**{name: lambda column: cells.amounts(column, digits) for name in ("face", "accrued", "fees", "settlement_amount")})
     face = own.amount("face", digits)
     _negative(own, "face", face, "is negative; the side says buy or sell, the face is positive.")
     columns: dict[str, Any] = {
@@ -218,6 +239,7 @@ def holdings(path: Path, bonds: Table) -> tuple[Table, Own]:
 def cash(path: Path, bonds: Table) -> tuple[Table, Own]:
     """cash.csv: what was booked to our cash accounts; money in is positive."""
     own = Own(path, "cash.csv", ("entry", "account", "amount"), tuple(CASH) + ("amount",))
+    own.ahead(("bond", "currency", "entry", "account", "narrative", "reference"), value_date=own_dates, booked_date=own_dates)
     bond = own.text("bond")
     currency, digits = currencies(own, own.text("currency"), bond, bonds)
     columns = {
