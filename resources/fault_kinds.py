@@ -80,9 +80,9 @@ def _coupon_not_taken_off(r: Reading, rng: random.Random) -> bool:
     before = [p for p in periods(r.bond) if p.counted_to <= r.facts["settlement_date"]]
     if not before or r.bond.kind != "fixed" or not before[-1].regular or r.facts["accrued"] < 0:
         return False
-    amount = coupon_amount(r.bond, before[-1], r.facts["face"])
 
     def more(facts: dict[str, Any]) -> None:
+        amount = coupon_amount(r.bond, before[-1], facts["face"])
         facts["accrued"] += amount
         facts["settlement"] += amount
         facts["accrued_days"] = None
