@@ -122,16 +122,19 @@ def _result(work: _Pairing, active: Array) -> TradePairs:
     lone = np.setdiff1d(left, again, assume_unique=True)
     mine = np.flatnonzero(active)
     void = np.flatnonzero(~active & (work.of_ticket >= 0))
-    none = np.full
     kinds = Words(np.repeat(np.array([0, 1], np.int32), [len(twice), len(again)]), Words.of(["ticket", "confirmation"]).values)
     return TradePairs(
-        ticket_row=np.concatenate((mine, none(len(void) + len(lone), -1))),
+        ticket_row=np.concatenate((mine, _none(len(void) + len(lone)))),
         confirmation_row=np.concatenate((work.of_ticket[mine], work.of_ticket[void], lone)),
-        cancelled_row=np.concatenate((none(len(mine), -1), void, none(len(lone), -1))),
+        cancelled_row=np.concatenate((_none(len(mine)), void, _none(len(lone)))),
         repeats=Table({"kind": kinds, "row": np.concatenate((twice, again)), "of_row": np.concatenate((of_ticket, of_confirmation))}),
         set_aside=np.flatnonzero(~work.stands),
         quiet=np.flatnonzero(~active & (work.of_ticket < 0)),
     )
+
+
+def _none(length: int) -> Array:
+    return np.full(length, -1, np.int64)
 
 
 def _by_reference(work: _Pairing, allowed: Array) -> None:
@@ -204,6 +207,10 @@ def _by_facts(work: _Pairing, allowed: Array) -> None:
     pairs = mine[a], theirs[b]
     chosen = keys.greedy(pairs, work.facts.apart("amount", pairs), work.desk_order, work.broker_order)
     _take_equal(work, DEALT, (pairs[0][chosen], pairs[1][chosen]))
+    # Runs too crowded to compare every amount with every other: in the order of their amounts.
+    mine, theirs = work.facts.told(DEALT, *work.open(allowed))
+    a, b = keys.ranked_pairs(*work.facts.keys(DEALT, mine, theirs), _within(work.desk_order, mine), _within(work.broker_order, theirs))
+    _take_equal(work, DEALT, (mine[a], theirs[b]))
 
 
 def _take_equal(work: _Pairing, names: tuple[str, ...], pairs: Pairs) -> None:
@@ -221,7 +228,6 @@ _TWO_OFF = (
     ("trade_date", "settlement_date"), ("price", "settlement_date"), ("face", "settlement_date"), ("price", "trade_date"),
     ("face", "trade_date"), ("side", "settlement_date"), ("side", "trade_date"), ("side", "price"), ("side", "face"),
 )  # fmt: skip
-_MUST = "broker"
 
 
 def _with_differences(work: _Pairing, allowed: Array) -> None:
@@ -260,10 +266,10 @@ def _plausible(work: _Pairing, names: tuple[str, ...], pairs: Pairs) -> Pairs:
 
 def _without_broker(work: _Pairing, allowed: Array) -> None:
     """Tickets that name no broker: everything else equal."""
-    nameless = allowed & (work.facts.desk[_MUST] == MISSING)
+    nameless = allowed & (work.facts.desk["broker"] == MISSING)
     if not nameless.any():
         return
-    names = tuple(n for n in DEALT if n != _MUST)
+    names = tuple(n for n in DEALT if n != "broker")
     mine, theirs = work.facts.told(names, *work.open(nameless))
     a, b = keys.only_pairs(*work.facts.keys(names, mine, theirs))
     _take_equal(work, names, (mine[a], theirs[b]))

@@ -122,6 +122,14 @@ def test_interchangeable_rows_pair_by_content() -> None:
     assert paired(tickets({}, {}), confirmations({})) == {("T1", "B1"), ("T2", "")}
 
 
+def test_a_crowd_of_equal_deals_pairs_in_the_order_of_amounts() -> None:
+    told = tickets(*({"settlement_minor": 1_000_000 + 10 * n} for n in range(80)))
+    confirmed = confirmations(*({"settlement_minor": 1_000_003 + 10 * n} for n in reversed(range(80))))
+    pairs = pair_trades(told, confirmed)
+    apart = told["settlement_minor"][pairs.ticket_row] - confirmed["settlement_minor"][pairs.confirmation_row]
+    assert apart.tolist() == [-3] * 80
+
+
 def test_yen_told_as_euros_still_pair() -> None:
     """A face of a million: 1,000,000 smallest units in yen, 100,000,000 in euros."""
     wrong = {"currency": "JPY", "face_minor": 1_000_000, "settlement_minor": 999_123, "accrued_minor": 4_123}
