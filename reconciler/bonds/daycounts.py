@@ -41,9 +41,9 @@ class Period:
     frequency: Array
     """Payments a year, int64; 0 counts as 1."""
     start: Array
-    """Unadjusted start of the coupon period, datetime64[D]."""
+    """Start of the coupon period as interest counts it, datetime64[D]."""
     end: Array
-    """Unadjusted end of the coupon period, datetime64[D]."""
+    """End of the coupon period as interest counts it, datetime64[D]."""
     whole: Array
     first_days: Array
     first_length: Array

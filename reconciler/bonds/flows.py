@@ -23,7 +23,7 @@ from reconciler.bonds import accrual, daycounts, schedules
 from reconciler.bonds.daycounts import EVEN, NUMBERS
 from reconciler.bonds.grid import Grid
 from reconciler.bonds.terms import Terms, in_force
-from reconciler.money import MISSING
+from reconciler.money import MISSING, half_up
 
 Array = np.ndarray[Any, Any]
 
@@ -61,6 +61,8 @@ class Flows:
     redemption: Array
     coupon_rate: Array
     accrued: Array
+    accrued_printed: Array
+    """Accrued rounded half up to six decimals, as the Treasury prints it."""
     days: Array
     """Days to maturity."""
     sound: Array
@@ -112,6 +114,8 @@ def of(terms: Terms, rows: Array, settle: Array) -> Flows:
         redemption=redemption,
         coupon_rate=rate,
         accrued=np.where(interest.sound, accrued, np.nan),
+        # exact, since 23 of 184 days of 1/8 % end on a five in the seventh place
+        accrued_printed=half_up([interest.rate_e9, interest.numerator], [interest.denominator, 1000]) / 1e6,
         days=(maturity - settle).astype(np.float64),
         sound=interest.sound,
     )

@@ -48,7 +48,7 @@ class _Asked:
     @property
     def taken_off(self) -> Array:
         """Accrued interest between full and clean price."""
-        return np.where(self.treasury, np.round(self.flows.accrued, 6), self.flows.accrued)
+        return np.where(self.treasury, self.flows.accrued_printed, self.flows.accrued)
 
 
 def _asked(terms: Terms, rows: Array, settle: Array, convention: Array) -> _Asked:

@@ -152,8 +152,8 @@ def parts(terms: Terms, rows: Array, start: Array, end: Array, periods: Periods)
         last_length[odd] = np.where(single, 1, (h1 - h0).astype(np.int64))
     return Period(
         frequency=terms.frequency[rows],
-        start=periods.start,
-        end=periods.end,
+        start=periods.accrual_start,
+        end=periods.accrual_end,
         whole=whole,
         first_days=first_days,
         first_length=first_length,

@@ -264,6 +264,13 @@ def test_investment_rate_turns_quadratic_beyond_half_a_year():
             assert 97.5 * (1 + (length - year / 2) * found / year) * (1 + found / 2) == pytest.approx(100, abs=1e-11)
 
 
+def test_the_treasury_takes_off_accrued_as_printed():
+    """23 of 184 days of 1/8 % are 0.0078125: printed 0.007813, half up (31 CFR 356 Appendix B I.D.4, "normal rounding")."""
+    terms, settle = made(row(coupon_rate="0.125", accrual_start="2020-05-15", maturity="2030-05-15")), days("2024-06-07")
+    full = pricing.dirty_at(terms, ONE, settle, np.array([2.0]), TREASURY)
+    assert full - price(terms, settle, [2.0], TREASURY) == pytest.approx([0.007813], abs=1e-12)
+
+
 def test_a_bills_street_yield_is_simple_interest():
     """Money-market practice: 100 / (1 + y days / 360)."""
     terms = made(zero(market="US_TBILL", maturity="2030-06-13"))

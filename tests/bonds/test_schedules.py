@@ -195,3 +195,23 @@ def test_adjusted_backwards_opens_the_new_period_early():
 def test_adjusted_interest_still_begins_on_the_told_day():
     terms = made(row(accrual_adjustment="adjusted", accrual_start="2027-08-15", maturity="2030-02-15"))
     assert schedules.periods_accruing(terms, ONE, days("2027-08-20")).accrual_start.tolist() == days("2027-08-15").tolist()
+
+
+def test_one_by_one_as_all_together():
+    """Scalars are arrays of length one, and nothing comes of nothing."""
+    extra = {"ex_dividend": "6b", "calendar": "XECB", "accrual_adjustment": "adjusted"}
+    terms = made(*(told for told, _ in SCHEDULES.values()), *(told | extra for told, _ in SCHEDULES.values()), zero())
+    rows = np.tile(np.arange(len(terms)), 4)
+    dates = np.datetime64("2028-07-01") + np.arange(len(rows)) * 7
+    for work in (schedules.periods_at, schedules.periods_accruing, schedules.period_ending):
+        whole = work(terms, rows, dates)
+        for n in range(len(rows)):
+            alone = work(terms, rows[n : n + 1], dates[n : n + 1])
+            for name, column in vars(whole).items():
+                np.testing.assert_array_equal(getattr(alone, name), column[n : n + 1], err_msg=name)
+        assert all(len(column) == 0 for column in vars(work(terms, rows[:0], dates[:0])).values())
+    for work in (schedules.payment_dates, schedules.ex_dates, schedules.record_dates):
+        alone = [work(terms, rows[n : n + 1], dates[n : n + 1])[0] for n in range(len(rows))]
+        np.testing.assert_array_equal(work(terms, rows, dates), alone)
+        assert len(work(terms, rows[:0], dates[:0])) == 0
+    assert len(schedules.coupons_between(terms, rows[:0], dates[0], dates[-1])) == 0
