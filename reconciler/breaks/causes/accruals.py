@@ -318,3 +318,21 @@ ACCRUALS: tuple[Variant, ...] = (
       for p in (100, 1_000, 5_000, 10_000, 50_000, 100_000)),
     *(Variant(FRACTION, "accrual", f"the fraction of the year is rounded to {k} decimals", _fraction_places(k)) for k in (4, 5, 6, 7, 8)),
 )  # fmt: skip
+
+
+_ALIKE = (
+    ("30/360", "30/360 US", "30E/360", "30E/360 ISDA", "Act/Act ICMA"),
+    ("Act/Act ICMA", "Act/Act ISDA", "Act/365F"),
+    ("Act/360", "Act/365F"),
+    ("Act/365F", "Act/365L", "Act/365 Canada", "NL/365"),
+)
+"""Day counts that are taken for each other in practice (common practice, no source)."""
+
+OTHER_COUNT = {f"the days are counted {entry.name}": number for number, entry in enumerate(daycounts.DAY_COUNTS)}
+"""Wording of a day-count variant -> the day count it counts by."""
+
+
+def alike() -> Array:
+    """True where the day count in the row is commonly taken for the one in the column."""
+    names = [entry.name for entry in daycounts.DAY_COUNTS]
+    return np.array([[any(one in group and other in group for group in _ALIKE) for other in names] for one in names])

@@ -14,6 +14,7 @@ import numpy as np
 
 from reconciler.bonds.terms import Terms
 from reconciler.breaks.causes import dates, inputs, search
+from reconciler.breaks.causes.accruals import OTHER_COUNT, alike
 from reconciler.breaks.causes.cases import Cases, from_breaks
 from reconciler.breaks.causes.judging import CHANCE, COARSE
 from reconciler.breaks.causes.singles import FOLLOWS
@@ -76,8 +77,8 @@ def _amounts(cases: Cases, terms: Terms) -> tuple[dict[int, list[Found]], Array]
     for rows, part, chance in search.run(cases, terms):
         tried[rows] = part.fits.tried
         case, number = part.fits.flat()
-        weights = np.array([_weight(h) for h in part.fits.hypotheses] or [0.0])
-        order = np.lexsort((number, -weights[number] if len(number) else number, case))
+        weights = _weights(part, case, number)
+        order = np.lexsort((number, -weights, case))
         case, number = case[order], number[order]
         starts = np.searchsorted(case, np.arange(len(rows) + 1))
         for one in range(len(rows)):
@@ -86,6 +87,17 @@ def _amounts(cases: Cases, terms: Terms) -> tuple[dict[int, list[Found]], Array]
                 fits = [part.fits.hypotheses[n] for n in dict.fromkeys(numbers)]
                 out[int(rows[one])] = _judged(part, one, fits, float(chance[one]))
     return out, tried
+
+
+def _weights(part: Search, case: Array, number: Array) -> Array:
+    """How common each fit is; a day count that nobody takes for the bond's own counts half."""
+    if not len(case):
+        return np.zeros(0)
+    weights = np.array([_weight(hypothesis) for hypothesis in part.fits.hypotheses])[number]
+    counted = [next((OTHER_COUNT[v.wording] for v in h if v.wording in OTHER_COUNT), -1) for h in part.fits.hypotheses]
+    other = np.array(counted)[number]
+    own = part.facts.terms.day_count[part.facts.bond_row[case]]
+    return np.where((other >= 0) & ~alike()[own, other], weights * 0.5, weights)
 
 
 def _weight(hypothesis: Hypothesis) -> float:

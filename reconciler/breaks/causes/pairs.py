@@ -12,6 +12,7 @@ import numpy as np
 
 from reconciler.breaks.causes import reckoning, slips
 from reconciler.breaks.causes.accruals import ACCRUALS, DAY_COUNT, FROM_START, ONE_DAY, TO_TRADE, WHOLE_COUPONS
+from reconciler.breaks.causes.cases import TRADE
 from reconciler.breaks.causes.singles import SLIP_CAUSES, factors
 from reconciler.breaks.causes.trying import Search, differs, explained
 from reconciler.breaks.causes.variants import WHOLE, Payment, Variant
@@ -20,6 +21,8 @@ from reconciler.money import MISSING
 Array = np.ndarray[Any, Any]
 Halves = list[tuple[Variant, Payment]]
 
+_SOME_DAYS = Variant(ONE_DAY, "accrual", "some other number of days is counted", lambda p: p)
+
 
 def doubted(search: Search, done: Halves, rows: Array, chance: Array) -> None:
     """A single cause is no proof where two others together give the same figures: those cases lose it."""
@@ -27,7 +30,16 @@ def doubted(search: Search, done: Halves, rows: Array, chance: Array) -> None:
         return
     part = Search(search.cases.take(rows), search.facts.terms)
     _two_at_once(part, _halves(search, done, rows))
+    _any_days(part)
     chance[rows[explained(part)]] = 1.0
+
+
+def _any_days(part: Search) -> None:
+    """Accrued for some other number of days: a rate of 5 for 5.125 looks the same as 120 days for 123."""
+    for days in (*range(-60, -3), *range(4, 61)):
+        moved = reckoning.accrue(part.facts.changed(date=part.facts.date + days))
+        made = reckoning.pay(part.facts, part.base.principal, moved)
+        part.try_out((_SOME_DAYS,), made, differs(made, part.base) & (part.cases.kind == TRADE))
 
 
 def _halves(search: Search, done: Halves, rows: Array) -> Halves:

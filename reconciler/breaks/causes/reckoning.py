@@ -34,6 +34,8 @@ class Facts:
     price: Array
     fees: Array
     date: Array
+    """The day interest runs to; `settled` is the day of settlement, on which factors and ratios are those in force."""
+    settled: Array
     coupon_date: Array
     trade_date: Array
     digits: Array
@@ -67,6 +69,7 @@ def of_cases(cases: Cases, terms: Terms) -> Facts:
         price=own("price"),
         fees=own("fees"),
         date=np.where(bank, ours.date, own("date")),
+        settled=np.where(bank, ours.date, own("date")),
         coupon_date=cases.coupon_date,
         trade_date=np.where(np.isnat(told.trade_date), ours.trade_date, told.trade_date),
         digits=cases.digits,
@@ -80,11 +83,23 @@ def accrue(facts: Facts) -> tuple[Array, Array]:
     t = np.flatnonzero(facts.kind == TRADE)
     if len(t):
         found = accrual.accrued(facts.terms, facts.bond_row[t], facts.date[t], facts.face[t])
-        minor[t], days[t] = found.minor, np.where(found.sound, found.days, MISSING)
+        minor[t], days[t] = _on_settled_factor(facts, t, found), np.where(found.sound, found.days, MISSING)
     c = np.flatnonzero(facts.kind == COUPON)
     if len(c):
         minor[c] = accrual.coupon_amounts(facts.terms, facts.bond_row[c], facts.coupon_date[c], facts.face[c])
     return minor, days
+
+
+def _on_settled_factor(facts: Facts, t: Array, found: accrual.Accrued) -> Array:
+    """Accrued on the factor (index ratio) of the settlement date, also where interest is counted to another day."""
+    if not len(facts.terms.factor_e12s):
+        return found.minor
+    factor = accrual.factors(facts.terms, facts.bond_row[t], facts.settled[t])
+    again = np.flatnonzero((factor != found.factor_e12) & found.sound)
+    out = found.minor.copy()
+    a = again
+    out[a] = half_up([facts.face[t[a]], found.rate_e9[a], found.numerator[a], factor[a]], [accrual.RATE, found.denominator[a], 10**12])
+    return out
 
 
 def principal(facts: Facts) -> Array:
