@@ -15,6 +15,7 @@ from tests.oracle import bank, deals
 from tests.oracle.bank import DUE_PLANTS, Due, Positions
 from tests.oracle.deals import ACCOUNTS, Entry, Trade
 from tests.oracle.issues import KINDS, Scene, row, text
+from tests.oracle.manners import restyled
 from tests.oracle.oddities import book, loose_entries, odd_bonds, safe_trades
 from tests.oracle.plants import TRADE_PLANTS
 from tests.oracle.world import CLOSINGS, World
@@ -47,6 +48,8 @@ def build(seed: int, trades: int = 300, today: date = date(2026, 3, 31), planted
     dues = bank.expect(bonds, positions, since, today, rng)
     as_of = _as_of(rng, since, today)
     world = World(since, today, bonds, dealt, dues, positions, as_of, show_zero=rng.random() < 0.5)
+    if seed % 3:
+        world.manners = tuple(restyled(manner, rng) for manner in world.manners)
     if rng.random() < 0.4:
         world.earlier = {account: since - timedelta(days=20) for account in ACCOUNTS[:2]}
     world.bond_rows = [row(bond) for bond in bonds]

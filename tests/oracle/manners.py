@@ -2,7 +2,8 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field
+import random
+from dataclasses import dataclass, field, replace
 
 
 @dataclass(frozen=True)
@@ -254,3 +255,43 @@ face = 1000
         parts=2,
     ),
 )
+
+NUMBERS = (("", "."), (",", "."), (".", ","), ("'", "."), (" ", ","), ("", ","))
+"""Signs between thousands and before decimals."""
+DAYS = ("%Y-%m-%d", "%d.%m.%Y", "%Y%m%d", "%d-%b-%Y", "%d %b %Y", "%d/%m/%Y", "%m/%d/%Y", "%d-%b-%y")
+SYNONYMS = {
+    "broker_reference": ("Broker Ref", "Confirmation No", "Deal ID", "Our Reference", "Trade Ref"),
+    "desk_reference": ("Client Ref", "Your Reference", "Ticket No", "Desk Reference"),
+    "bond": ("ISIN", "ISIN Code", "Security ID (ISIN)"),
+    "side": ("B/S", "Buy/Sell", "Side", "Direction", "Transaction Type"),
+    "face": ("Nominal", "Face Amount", "Par Value", "Face Value", "Notional", "Quantity"),
+    "price": ("Price", "Clean Price", "Deal Price", "Px"),
+    "accrued": ("Accrued Interest", "Accrued Int", "Accrued", "Accrued Amount"),
+    "fees": ("Commission", "Fees", "Charges", "Brokerage"),
+    "settlement": ("Net Amount", "Settlement Amount", "Net Consideration", "Net Proceeds", "Total Amount"),
+    "currency": ("Ccy", "Currency", "Settle Ccy"),
+    "trade_date": ("Trade Date", "Execution Date", "TD", "Deal Date"),
+    "settlement_date": ("Settlement Date", "Settle Date", "Value Date"),
+}
+"""Headings in plain use, from common practice."""
+
+
+def restyled(manner: Manner, rng: random.Random) -> Manner:
+    """A broker without a layout file, writing in another style: what is common must be recognised without being told."""
+    if manner.layout:
+        return manner
+    thousands, point = rng.choice(NUMBERS)
+    headings = {name: rng.choice(SYNONYMS.get(name, (told,))) for name, told in manner.headings.items()}
+    return replace(
+        manner,
+        headings=headings,
+        thousands=thousands,
+        point=point,
+        delimiter=rng.choice((";", "\t", "|") if point == "," or thousands == "," else (",", ";", "\t", "|")),
+        encoding=rng.choice(("utf-8", "utf-8-sig", "utf-16", "cp1252")),
+        negative=rng.choice(("-n", "n-", "(n)")),
+        day=rng.choice(DAYS),
+        sides=rng.choice((("buy", "sell"), ("B", "S"), ("BUY", "SELL"), ("Bought", "Sold"), ("Purchase", "Sale"))),
+        titles=rng.choice(((), (), ("Confirmations of the day",), ("Confirmations", "", "as of close"))),
+        footer=rng.choice(("", "", "TOTAL{delimiter}{rows}", "TRAILER{delimiter}{rows}")),
+    )

@@ -139,7 +139,7 @@ def loose_entries(world: World, rng: random.Random) -> None:
         and not t.more_tickets
         and not t.more_confirmations
     ]
-    picked = rng.sample(quiet_trades, 6)
+    picked = rng.sample(quiet_trades, min(6, len(quiet_trades)))
     for trade in picked[:3]:
         _key_twice(world, trade)
     for trade in picked[3:]:

@@ -12,7 +12,7 @@ from tests.oracle.arithmetic import Bond
 from tests.oracle.bank import Due, Positions
 from tests.oracle.deals import Entry, Trade, Truth
 from tests.oracle.issues import text
-from tests.oracle.manners import MANNERS
+from tests.oracle.manners import MANNERS, Manner
 from tests.oracle.writing import (
     TICKET_COLUMNS,
     Written,
@@ -45,6 +45,7 @@ class World:
     confirmations: list[dict[str, Any]] = field(default_factory=list)
     bond_rows: list[dict[str, str]] = field(default_factory=list)
     show_zero: bool = False
+    manners: tuple[Manner, ...] = MANNERS
     earlier: dict[str, date] = field(default_factory=dict)
     """Accounts whose holdings are told a second time, as of an earlier day."""
 
@@ -69,7 +70,7 @@ class World:
                 rng,
             ),
         )
-        for manner in MANNERS:
+        for manner in self.manners:
             told = [facts for facts in self.confirmations if facts["broker"] == manner.broker]
             if manner.layout:
                 (folder / "layouts" / f"{manner.stem}.toml").write_text(manner.layout.lstrip(), encoding="utf-8")

@@ -140,7 +140,7 @@ def confirmation_row(facts: dict[str, Any], manner: Manner, day_style: str) -> d
         "settlement": amount(facts["settlement"]),
         "currency": currency,
         "account": facts["account"],
-        "yield": facts["yield_text"],
+        "yield": number_style(facts["yield_text"], "", manner.point, manner.negative),
         "status": manner.statuses[facts["status"]],
     }
     if "spoilt" in facts:
@@ -168,7 +168,7 @@ def confirmation_file(path: Path, facts: list[dict[str, Any]], manner: Manner) -
         if "spoilt" in told:
             written.rejected.append(number)
     if manner.footer:
-        out.write(manner.footer.format(rows=len(facts)) + "\n")
+        out.write(manner.footer.format(rows=len(facts), delimiter=manner.delimiter) + "\n")
     path.write_bytes(out.getvalue().encode(manner.encoding))
     return written
 
