@@ -124,26 +124,35 @@ def _rounded(
     terms: Terms, rows: Array, face: Array, factor: Array, rate: Array, above: Array, below: Array
 ) -> Array:
     """Face x factor x rate x fraction in minor units, rounded as each bond's terms say."""
-    with_factor = np.flatnonzero(factor != ONE)
-    out = half_up([face, rate, above], [RATE, below])
-    if len(with_factor):
-        w = with_factor
-        out[w] = half_up([face[w], rate[w], above[w], factor[w]], [RATE, below[w], ONE])
-    per, places = terms.rounding_per[rows], terms.rounding_places[rows]
-    cut = terms.rounding_down[rows]
-    odd = np.flatnonzero((per > 0) | cut)
-    if not len(odd):
-        return out
-    for row_per, row_places, row_cut in sorted(set(zip(per[odd].tolist(), places[odd].tolist(), cut[odd].tolist(), strict=True))):
-        w = odd[(per[odd] == row_per) & (places[odd] == row_places) & (cut[odd] == row_cut)]
-        settle = down if row_cut else half_up
-        if row_per:
+    per, places, cut = terms.rounding_per[rows], terms.rounding_places[rows], terms.rounding_down[rows]
+    ruled = (per > 0) | cut
+    if not ruled.any():
+        return _times(half_up, [face, rate, above], [RATE, below], factor)
+    out = np.empty(len(rows), np.int64)
+    plain = np.flatnonzero(~ruled)
+    out[plain] = _times(half_up, [face[plain], rate[plain], above[plain]], [RATE, below[plain]], factor[plain])
+    rule = (per * 100 + places) * 2 + cut
+    for one in np.unique(rule[ruled]).tolist():
+        w = np.flatnonzero(ruled & (rule == one))
+        settle, of_face, decimals = down if one % 2 else half_up, one // 200, one // 2 % 100
+        if of_face:
             # accrued per so much of face first, to so many decimals; then times the face
-            unit = settle([rate[w], above[w], factor[w], row_per * 10**row_places], [RATE, below[w], ONE])
-            out[w] = settle([face[w], unit], [row_per * 10**row_places])
+            scale = of_face * 10**decimals
+            unit = _times(settle, [rate[w], above[w], scale], [RATE, below[w]], factor[w])
+            out[w] = settle([face[w], unit], [scale])
         else:
-            out[w] = settle([face[w], rate[w], above[w], factor[w]], [RATE, below[w], ONE])
+            out[w] = _times(settle, [face[w], rate[w], above[w]], [RATE, below[w]], factor[w])
     return out
+
+
+def _times(settle: Any, tops: list[Any], bottoms: list[Any], factor: Array) -> Array:
+    """A rounded quotient times each row's factor; factors of one, nearly all there are, are left out of the reckoning."""
+    found: Array = settle(tops, bottoms)
+    w = np.flatnonzero(factor != ONE)
+    if len(w):
+        some = [part[w] if isinstance(part, np.ndarray) else part for part in (*tops, *bottoms)]
+        found[w] = settle([*some[: len(tops)], factor[w]], [*some[len(tops) :], ONE])
+    return found
 
 
 def _capped(terms: Terms, rows: Array, periods: Periods, above: Array, below: Array) -> tuple[Array, Array]:
