@@ -36,15 +36,21 @@ def day_of_month(month: Array, day: Array) -> Array:
     return result
 
 
+def packed(anchor: Array, month_end: Array, frequency: Array) -> Array:
+    """Each bond's grid in one number, so that a trade looks up one column: month of the anchor, day of the month, months of a period."""
+    month, day = month_number(anchor)
+    # the 31st of every month is its last day; bonds without coupons have a yearly grid, on which yields count
+    day, step = np.where(month_end, 31, day), 12 // np.maximum(frequency, 1)
+    result: Array = np.clip(month - _FIRST_MONTH, 0, len(_STARTS)) << 16 | day << 8 | step
+    return result
+
+
 class Grid:
     """The coupon grid of some rows: `at(k)` is the date k periods before the anchor (negative k: after it)."""
 
     def __init__(self, terms: Terms, rows: Array) -> None:
-        self.month, day = month_number(terms.anchor[rows])
-        # the 31st of every month is its last day
-        self.day = np.where(terms.end_of_month[rows], 31, day)
-        # bonds without coupons have a yearly grid, on which yields count
-        self.step = (12 // np.maximum(terms.frequency[rows], 1)).astype(np.int64)
+        whole = terms.grid[rows]
+        self.month, self.day, self.step = (whole >> 16) + _FIRST_MONTH, whole >> 8 & 255, whole & 255
 
     def at(self, k: Array) -> Array:
         """Grid date number k of each row."""

@@ -23,7 +23,7 @@ from reconciler.bonds import markets
 from reconciler.bonds.calendars import ADJUSTMENTS, Calendars
 from reconciler.bonds.dates import civil
 from reconciler.bonds.daycounts import NUMBERS
-from reconciler.bonds.grid import grid_after, grid_before
+from reconciler.bonds.grid import grid_after, grid_before, packed
 from reconciler.bonds.terms import (
     AMORTISING,
     BUSINESS,
@@ -152,7 +152,10 @@ def _grid(columns: Columns, frequency: Array) -> dict[str, Any]:
             columns.fault(rows, second, reason, [str(day) for day in dates[second][rows]])
     anchor = np.where(np.isnat(dates["last_regular_coupon"]), dates["maturity"], dates["last_regular_coupon"])
     month_end = _month_ends(columns, anchor, dates, frequency)
-    return {**dates, "told_first_coupon": dates["first_coupon"], "anchor": anchor, "end_of_month": month_end}
+    return {
+        **dates, "told_first_coupon": dates["first_coupon"], "anchor": anchor, "end_of_month": month_end,
+        "grid": packed(anchor, month_end, frequency),
+    }  # fmt: skip
 
 
 _IN_ORDER = (

@@ -132,15 +132,13 @@ def periods_accruing(terms: Terms, rows: Array, dates: Array) -> Periods:
 
 def parts(terms: Terms, rows: Array, start: Array, end: Array, periods: Periods) -> Period:
     """What the day counts ask of the period that [start, end) lies in (see daycounts.Period)."""
-    one = np.ones(len(rows), np.int64)
-    zero = np.zeros(len(rows), np.int64)
-    days = (end - start).astype(np.int64)
-    length = np.maximum((periods.accrual_end - periods.accrual_start).astype(np.int64), 1)
-    whole, first_days, first_length, last_days, last_length = zero, days, length, zero, one
+    first_days = (end - start).astype(np.int64)
+    first_length = np.maximum((periods.accrual_end - periods.accrual_start).astype(np.int64), 1)
+    # one row holds for all where no period is odd
+    whole, last_days, last_length = np.zeros(1, np.int64), np.zeros(1, np.int64), np.ones(1, np.int64)
     odd = np.flatnonzero(~periods.regular & ~np.isnat(periods.start))
     if len(odd):
-        whole, first_days, first_length = whole.copy(), first_days.copy(), first_length.copy()
-        last_days, last_length = last_days.copy(), last_length.copy()
+        whole, last_days, last_length = (np.repeat(column, len(rows)) for column in (whole, last_days, last_length))
         grid = Grid(terms, rows[odd])
         x, y = start[odd], end[odd]
         (kx, g0, g1), (ky, h0, h1) = grid.around(x), grid.around(y)

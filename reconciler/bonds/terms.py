@@ -65,6 +65,8 @@ class Terms:
     sound: Array
     anchor: Array
     """Where the coupon grid is rolled back from."""
+    grid: Array
+    """The coupon grid, packed (see grid.packed)."""
     calendars: Calendars
     rate_offsets: Array
     rate_from: Array
