@@ -7,6 +7,7 @@
     singles     pairs      search    all ways over all cases: one, two, slips on top
     judging     when a fit is proof
     inputs      dates     why a told price, face, fee, side or day is wrong in itself
+    across      what breaks say about each other
     naming      the outcome, put on the breaks
 
 Adding a cause: one entry in the list of its family (`ACCRUALS`, `WHOLE`, `FEES`, `FACE`, `READINGS`, `SLIPS`, or a line in dates) and a

@@ -15,6 +15,7 @@ import numpy as np
 from reconciler.bonds.terms import Terms
 from reconciler.breaks.causes import dates, inputs, search
 from reconciler.breaks.causes.accruals import OTHER_COUNT, alike
+from reconciler.breaks.causes.across import across
 from reconciler.breaks.causes.cases import Cases, from_breaks
 from reconciler.breaks.causes.judging import CHANCE, COARSE
 from reconciler.breaks.causes.singles import FOLLOWS
@@ -44,7 +45,7 @@ def name_causes(items: Table, tickets: Table, confirmations: Table, terms: Terms
     """The breaks with causes, and the table EXPLANATIONS. `digits` are the minor digits of every item's currency."""
     cases = from_breaks(items, tickets, confirmations, breaks, digits)
     if not len(cases):
-        return breaks, table(EXPLANATIONS)
+        return across(items, breaks), table(EXPLANATIONS)
     key = cases.item_row * 4 + cases.party
     wanted = breaks["item_row"] * 4 + _party_numbers(breaks["party"])
     place = np.searchsorted(key, wanted)
@@ -63,7 +64,8 @@ def name_causes(items: Table, tickets: Table, confirmations: Table, terms: Terms
             found[row], counts[row] = days.get(case, ()), 40
         elif kind in ("price", "face", "fees", "side"):
             found[row], counts[row] = _input(cases, case, kind), 60
-    return _written(breaks, found, counts)
+    named, explained = _written(breaks, found, counts)
+    return across(items, named), explained
 
 
 def _party_numbers(parties: Words) -> Array:
