@@ -24,7 +24,7 @@ import numpy as np
 
 from reconciler.bonds import accrual, schedules, settlement
 from reconciler.expected.terms import resolve_terms
-from reconciler.records import BONDS, CLOSINGS, FACTORS, RATES, table
+from reconciler.records import BONDS, CLOSINGS, FACTORS, MISSING, RATES, table
 
 DATA = Path(__file__).resolve().parent.parent / "bench-data"
 Row = tuple[str, float, str, float | None]
@@ -128,6 +128,34 @@ def full_schedules(scale: float) -> Iterator[Row]:
     yield "  with exact amounts", best(amounts, 1), "", None
 
 
+def causes(scale: float) -> Iterator[Row]:
+    """Ten thousand differences that nothing explains: every cause, pair and slip is tried on each; beside a loop over breaks."""
+    from reconciler.breaks.causes import search
+    from reconciler.breaks.causes.cases import BANK, Cases, Told
+
+    count, bonds = int(10_000 * scale), 500
+    terms, _start, maturity = book(bonds)
+    draw = np.random.default_rng(5)
+    row, side = draw.integers(0, bonds, count), draw.choice(np.array([1, -1], np.int8), count)
+    traded = np.datetime64("2026-03-02") + draw.integers(0, 20, count)
+    settles = np.minimum(settlement.settlement_dates(terms, row, traded), maturity[row] - 1)
+    face, price = draw.integers(1, 5000, count) * 100_000, draw.integers(20_000, 30_000, count) * (10**12 // 256)
+    done = settlement.settle(terms, row, settles, face, price)
+    amount = -side * (done.principal_minor + done.accrued_minor)
+    none, zero, nat = np.full(count, MISSING), np.zeros(count, np.int64), np.full(count, np.datetime64("NaT", "D"))
+    ours = Told(side, face, price, zero, done.accrued_days, done.accrued_minor, done.principal_minor, amount, settles, traded)
+    told = Told(np.zeros(count, np.int8), none, none, none, none, none, none, amount + draw.integers(-10**6, 10**6, count), settles, nat)
+    cases = Cases(np.arange(count), np.full(count, BANK, np.int8), np.zeros(count, np.int8), row, nat, np.full(count, 2), none, none, ours, told)
+    spent = best(lambda: search.run(cases, terms), 1)
+    tried = search.run(cases.take(np.arange(100)), terms)[0][1].fits.tried
+    few = 10
+    start = time.perf_counter()
+    for one in range(few):
+        search.run(cases.take(np.array([one])), terms)
+    beside = (time.perf_counter() - start) * count / few
+    yield f"{count:,} breaks searched, {tried:,} explanations each", spent, "the same search, one break at a time", beside
+
+
 def files(scale: float) -> Iterator[Row]:
     """A million rows of CSV to exact typed columns."""
     from reconciler.intake import own
@@ -170,6 +198,7 @@ def _morning(scale: float) -> Path:
 ROWS: dict[str, Callable[[float], Iterator[Row]]] = {
     "arithmetic": arithmetic,
     "schedules": full_schedules,
+    "causes": causes,
     "files": files,
     "morning": morning,
 }
