@@ -109,7 +109,7 @@ def ticket_row(facts: dict[str, Any]) -> dict[str, str]:
 
 def _price(facts: dict[str, Any], manner: Manner) -> str:
     """The price in the broker's manner: 32nds as such, or as decimals where the broker writes decimals."""
-    if facts["quote"] == "32nds" and manner.thirty_seconds:
+    if facts["quote"] == "32nds" and manner.thirty_seconds and "-" in facts["price_text"]:
         return str(facts["price_text"])
     exact = text(Fraction(facts["price"]))
     if "." not in exact and facts["quote"] == "32nds":
