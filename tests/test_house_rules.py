@@ -19,7 +19,9 @@ SOURCES = sorted((ROOT / "reconciler").rglob("*.py"))
 SCRIPTS = sorted((ROOT / "resources").glob("*.py"))
 TESTS = sorted((ROOT / "tests").rglob("*.py"))
 
-LONG_FILES: dict[str, str] = {}
+LONG_FILES: dict[str, str] = {
+    "tests/oracle/plants.py": "one list of plants, to be read from top to bottom",
+}
 """Files above 400 lines, each with the reason why it may be."""
 
 
