@@ -13,7 +13,7 @@ from tests.oracle.arithmetic import payment_date
 from tests.oracle.bank import payments
 from tests.oracle.deals import ACCOUNTS, Entry, Trade, Truth
 from tests.oracle.issues import Scene, row, text
-from tests.oracle.plants import desk_told_twice_reference
+from tests.oracle.silent_plants import desk_told_twice_reference
 from tests.oracle.world import World
 
 SPOILT_BONDS: dict[str, dict[str, str]] = {
