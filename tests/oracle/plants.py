@@ -24,7 +24,7 @@ from tests.oracle.bank_plants import (
     bank_one_unit_off,
     bank_sign,
 )
-from tests.oracle.deals import ACCOUNTS, BROKERS, Trade, reckon
+from tests.oracle.deals import ACCOUNTS, Trade, reckon
 from tests.oracle.issues import text
 from tests.oracle.silent_plants import (
     cancelled_but_confirmed,
@@ -298,10 +298,6 @@ def one_unit_off(party: str) -> TradePlant:
     return plant
 
 
-def other_broker(name: str) -> str:
-    return BROKERS[(BROKERS.index(name) + 1) % len(BROKERS)]
-
-
 TRADE_PLANTS: dict[str, TradePlant] = {
     "broker's amount mistyped": amount_slip("Broker"),
     "desk's amount mistyped": amount_slip("Desk"),
@@ -350,5 +346,3 @@ TRADE_PLANTS: dict[str, TradePlant] = {
     "bank's account": bank_account,
     "bank's sign": bank_sign,
 }
-
-__all__ = ["TRADE_PLANTS", "Must", "other_broker", "slip"]
