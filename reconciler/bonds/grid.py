@@ -60,7 +60,8 @@ class Grid:
         """The smallest k whose date is on or before each day."""
         month, _day = month_number(dates)
         k = -((month - self.month) // self.step)
-        return k + (self.at(k) > dates)
+        result: Array = k + (self.at(k) > dates)
+        return result
 
     def around(self, dates: Array) -> tuple[Array, Array, Array]:
         """For each day the smallest k whose date is on or before it, that date, and the next grid date (k - 1)."""

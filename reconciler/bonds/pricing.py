@@ -127,7 +127,8 @@ def _simple(asked: _Asked, some: Array, yields: Array) -> tuple[Array, Array]:
 
 def _simple_yield(asked: _Asked, some: Array, target: Array) -> Array:
     total, years, accrued = _simple_terms(asked, some)
-    return (total / (target - accrued) - 1) / years
+    result: Array = (total / (target - accrued) - 1) / years
+    return result
 
 
 def _discount(asked: _Asked, some: Array, yields: Array) -> tuple[Array, Array]:
