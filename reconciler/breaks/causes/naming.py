@@ -51,7 +51,7 @@ def name_causes(items: Table, tickets: Table, confirmations: Table, terms: Terms
     place = np.searchsorted(key, wanted)
     place = np.where((place < len(key)) & (key[np.minimum(place, len(key) - 1)] == wanted), place, -1)
     kinds = breaks["break"].to_list()
-    amounts, tried = _amounts(cases, terms)
+    amounts, tried = _amounts(cases, terms, items["item"].rank()[cases.item_row])
     days = _dates(cases, terms)
     found: dict[int, Sequence[Found]] = {}
     counts: dict[int, int] = {}
@@ -73,10 +73,13 @@ def _party_numbers(parties: Words) -> Array:
     return table_[parties.codes]
 
 
-def _amounts(cases: Cases, terms: Terms) -> tuple[dict[int, list[Found]], Array]:
+def _amounts(cases: Cases, terms: Terms, rank: Array) -> tuple[dict[int, list[Found]], Array]:
     out: dict[int, list[Found]] = {}
     tried = np.zeros(len(cases), np.int64)
-    for rows, part, chance in search.run(cases, terms):
+    # in the order of names, so that the stretches searched together do not hang on the order of the files
+    named = np.lexsort((cases.party, rank))
+    for stretch, part, chance in search.run(cases.take(named), terms):
+        rows = named[stretch]
         tried[rows] = part.fits.tried
         case, number = part.fits.flat()
         weights = _weights(part, case, number)
