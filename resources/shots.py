@@ -103,7 +103,7 @@ class Studio:
         yield "menu", self._menu
         yield "problems-banner", self._banner
         yield "none-left", self._none_left
-        for key in ("open", "problems", "keys", "about", "layout"):
+        for key in ("open", "problems", "keys", "about", "layout", "letter"):
             yield f"dialog-{key}", lambda key=key: self._dialog(key)
         if self.scale == "100":
             yield "large", self._large
@@ -266,6 +266,10 @@ class Studio:
             file = next(path.name for path in sorted((self.morning / "confirmations").iterdir()))
             made = AssignColumns(self.window, self.morning, [Problem(f"confirmations/{file}", 0, "", "", reason)],
                                  self.window.loaded.day.source.tickets["broker"].values.to_pylist())  # fmt: skip
+        elif key == "letter":
+            from reconciler.window.dialogs.letter import LetterDialog
+
+            made = LetterDialog(self.window, self.window.loaded.day, int(self.window.loaded.day.breaks["item_row"][0]))
         else:
             made = Keys(self.window) if key == "keys" else About(self.window)
         made.show()

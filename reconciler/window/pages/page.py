@@ -9,6 +9,7 @@ from PySide6.QtCore import Qt, Signal
 from PySide6.QtGui import QAction
 from PySide6.QtWidgets import QStackedLayout, QVBoxLayout, QWidget
 
+from reconciler.problems import BugError
 from reconciler.window.filterbar import FilterBar
 from reconciler.window.header import Header
 from reconciler.window.sheet import Sheet
@@ -82,7 +83,7 @@ class Page(QWidget):
 
     def show_day(self, loaded: Any, keep: bool = False) -> None:
         """Shows another morning (window/loading.py: Loaded), or with `keep` the same one with its causes."""
-        raise NotImplementedError
+        raise BugError(f"the page {self.key} does not say how it shows a morning")
 
     # --- what a person does
 
