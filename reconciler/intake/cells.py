@@ -10,6 +10,7 @@ from __future__ import annotations
 
 import re
 import unicodedata
+from collections import Counter
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from decimal import Decimal, InvalidOperation
@@ -21,7 +22,9 @@ import pyarrow.compute as pc
 from reconciler.records import MISSING, Words
 
 NAT = np.datetime64("NaT", "D")
-_SPACES = str.maketrans(dict.fromkeys(" \xa0\u202f\u2009'’_", ""))
+_GAPS = " \u00a0\u202f\u2009'\u2019"
+_SPACES = str.maketrans(dict.fromkeys(_GAPS, ""))
+_SPACED = re.compile(rf"-?[1-9]\d{{0,2}}([{_GAPS}]\d{{3}})+([.,]\d*)?")
 _PLAIN = r"^-?\d{1,13}(\.\d{1,4})?$"
 
 
@@ -47,12 +50,17 @@ _DIGITS_AND_MARKS = re.compile(r"[0-9.,]*[0-9][0-9.,]*")
 
 def tidy(text: str) -> str:
     """A number's text in plain characters: width folded, one kind of minus, no inner spaces or apostrophes, sign in front."""
-    plain = unicodedata.normalize("NFKC", text).strip().replace("\u2212", "-").translate(_SPACES)
+    plain = unicodedata.normalize("NFKC", text.replace("\u2009", " ").replace("\u202f", " ").replace("\u00a0", " "))
+    plain = plain.strip().replace("\u2212", "-")
     if plain.startswith("(") and plain.endswith(")"):
-        plain = "-" + plain[1:-1]
+        plain = "-" + plain[1:-1].strip()
     if plain.endswith("-"):
-        plain = "-" + plain[:-1]
-    return plain.removeprefix("+")
+        plain = "-" + plain[:-1].strip()
+    plain = plain.removeprefix("+").strip()
+    if plain.startswith("- "):
+        plain = "-" + plain[2:].strip()
+    # gaps group thousands or mean nothing that is understood: then they stay, and the text is no number
+    return plain.translate(_SPACES) if _SPACED.fullmatch(plain) else plain
 
 
 _GROUPED = {
@@ -62,25 +70,26 @@ _GROUPED = {
 }
 
 
-def mark_evidence(column: pa.Array) -> tuple[set[str], bool]:
-    """Decimal marks that some text proves ("." or ","), and whether some text leaves it open.
+def mark_evidence(column: pa.Array) -> tuple[Counter[str], bool]:
+    """How many texts prove each decimal mark ("." or ","), and whether some text leaves it open.
 
     Columns in one plain style are looked at whole; only others are looked at text by text.
     """
     for mark, (style, proof) in _GROUPED.items():
         if pc.all(pc.match_substring_regex(column, style)).as_py() is not False:
-            if pc.any(pc.match_substring_regex(column, proof)).as_py():
-                return {mark}, False
-            return set(), bool(pc.any(pc.match_substring_regex(column, "[.,]")).as_py())
+            proven = pc.sum(pc.match_substring_regex(column, proof)).as_py()
+            if proven:
+                return Counter({mark: proven}), False
+            return Counter(), bool(pc.any(pc.match_substring_regex(column, "[.,]")).as_py())
     return _mark_evidence(pc.unique(column).to_pylist())
 
 
-def _mark_evidence(texts: Sequence[str]) -> tuple[set[str], bool]:
+def _mark_evidence(texts: Sequence[str]) -> tuple[Counter[str], bool]:
     """The same, one text after the other.
 
     A text that is no number in either style (1,000O) proves nothing: it costs its own row, not the file.
     """
-    proven: set[str] = set()
+    proven: Counter[str] = Counter()
     undecided = False
     for text in texts:
         plain = tidy(text).lstrip("-")
@@ -88,14 +97,14 @@ def _mark_evidence(texts: Sequence[str]) -> tuple[set[str], bool]:
             continue
         points, commas = plain.count("."), plain.count(",")
         if points and commas:
-            proven.add("." if plain.rfind(".") > plain.rfind(",") else ",")
+            proven["." if plain.rfind(".") > plain.rfind(",") else ","] += 1
         elif points > 1 or commas > 1:
-            proven.add("," if points > 1 else ".")
+            proven["," if points > 1 else "."] += 1
         elif points or commas:
             mark = "." if points else ","
             head, tail = plain.split(mark)
             if len(tail) != 3 or len(head) > 3 or head in ("", "0"):
-                proven.add(mark)
+                proven[mark] += 1
             else:
                 undecided = True
     return proven, undecided
@@ -111,7 +120,7 @@ def _plain_number(text: str, mark: str) -> str:
             raise InvalidOperation
         if len(groups) > 1 and (not 1 <= len(groups[0]) <= 3 or any(len(group) not in (2, 3) for group in groups[1:])):
             raise InvalidOperation
-        if len(groups) > 1 and len(groups[-1]) != 3:
+        if len(groups) > 1 and (len(groups[-1]) != 3 or groups[0].startswith("0")):
             raise InvalidOperation
         plain = plain.replace(other, "")
     return plain.replace(mark, ".")
@@ -169,7 +178,7 @@ def _grouped(part: pa.Array, rows: np.ndarray, mark: str, values: np.ndarray, pl
     """Figures with grouped thousands (or a decimal comma), written plain and converted whole."""
     group = "," if mark == "." else "."
     escaped = {".": r"\.", ",": ","}
-    shape = rf"^-?(\d{{1,3}}({escaped[group]}\d{{3}})*|\d{{1,13}})({escaped[mark]}\d{{1,4}})?$"
+    shape = rf"^-?([1-9]\d{{0,2}}({escaped[group]}\d{{3}})+|\d{{1,13}})({escaped[mark]}\d{{1,4}})?$"
     shaped = pc.match_substring_regex(part, shape)
     written = pc.replace_substring(pc.replace_substring(part, group, ""), mark, ".")
     found, good = _scaled(pc.if_else(shaped, written, "x"), 4, _PLAIN)
@@ -225,6 +234,7 @@ def price_of(text: str, mark: str = ".") -> Decimal:
 
     Cash market: the third digit is eighths of a 32nd (CME education page on price quoting).
     """
+    text = re.sub(r"([¼½¾⅛⅜⅝⅞])", lambda sign: " " + unicodedata.normalize("NFKC", sign[1]), text)
     plain = re.sub(r"\s+", " ", text.replace("\u2019", "'").replace("\u00a0", " ").strip()).removesuffix("%").strip()
     plain = unicodedata.normalize("NFKC", plain).replace("\u2044", "/")
     found = _VULGAR.match(plain)
@@ -273,17 +283,27 @@ def _day(year: int, month: int, day: int) -> np.datetime64:
     return np.datetime64(f"{year:04d}-{month:02d}-{day:02d}", "D")
 
 
-def slashed(texts: Sequence[str]) -> set[str]:
-    """Orders ("dmy", "mdy") that the slashed dates among the texts prove; both in the set is a contradiction."""
-    proven = set()
+def slashed(texts: Sequence[str]) -> Counter[str]:
+    """How many of the slashed dates prove each order ("dmy", "mdy"): those with one part above 12; with two they are no dates."""
+    proven: Counter[str] = Counter()
     for text in texts:
         found = _DATE_SHAPES[4][0].match(text.strip())
         if found:
-            if int(found[1]) > 12:
-                proven.add("dmy")
-            if int(found[2]) > 12:
-                proven.add("mdy")
+            first, second = int(found[1]) > 12, int(found[2]) > 12
+            if first != second:
+                proven["dmy" if first else "mdy"] += 1
     return proven
+
+
+def settled(proven: Counter[str]) -> str:
+    """The style that the texts prove: the only one, or one that nine in ten of them prove; "" where they contradict each other.
+
+    The few that are written otherwise are then faults of their own rows.
+    """
+    if not proven:
+        return ""
+    best, count = min(proven.items(), key=lambda item: (-item[1], item[0]))
+    return best if count * 10 >= proven.total() * 9 else ""
 
 
 def has_slashed(texts: Sequence[str]) -> bool:

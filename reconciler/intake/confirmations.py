@@ -6,6 +6,7 @@ the file does not prove is a question for the user (one clear sentence, the whol
 
 from __future__ import annotations
 
+from collections import Counter
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
 from pathlib import Path
@@ -18,7 +19,7 @@ import pyarrow.compute as pc
 from reconciler.intake import cells, layouts
 from reconciler.intake.layouts import Layout
 from reconciler.intake.own import BAD_SIDE, BAD_STATUS, losing
-from reconciler.intake.reading import load, unreadable
+from reconciler.intake.reading import Raw, load, unreadable
 from reconciler.intake.sheet import Sheet
 from reconciler.money import MISSING, known_currency, minor_digits
 from reconciler.records import CONFIRMATIONS, STATUSES, Table, Words, concat
@@ -57,6 +58,7 @@ def read(path: Path, name: str, known: Known, shelf: Sequence[Layout]) -> tuple[
         is_header=_header_test(given), is_footer=lambda row: layouts.is_footer(row, given.footer),
     )  # fmt: skip
     sheet = Sheet(raw)
+    sheet.set_aside(_no_trades(raw, given.footer))
     broker = given.broker or layouts.broker_of(path.name, known.brokers)
     columns = _columns(sheet, given, known)
     if not broker and "broker" not in columns:
@@ -66,6 +68,23 @@ def read(path: Path, name: str, known: Known, shelf: Sequence[Layout]) -> tuple[
     table = _typed(sheet, style, known)
     extras = {h: raw.columns[i] for i, h in enumerate(raw.headings) if h and i not in style.columns.values()}
     return table, sheet, style, extras
+
+
+def _no_trades(raw: Raw, footer: str | None) -> np.ndarray:
+    """Rows that are no trades wherever they stand: blank ones, headings again, and what the layout's footer says."""
+    if not len(raw):
+        return np.zeros(0, np.int64)
+    blank, again = np.ones(len(raw), np.bool_), np.ones(len(raw), np.bool_)
+    for column, heading in zip(raw.columns, raw.headings, strict=True):
+        if not (blank.any() or again.any()):
+            break
+        text = cells.trimmed(column)
+        blank &= pc.equal(text, "").to_numpy(zero_copy_only=False)
+        again &= pc.equal(text, heading).to_numpy(zero_copy_only=False)
+    mask = blank | again
+    if footer:
+        mask |= pc.match_substring_regex(cells.trimmed(raw.columns[0]), footer).to_numpy(zero_copy_only=False)
+    return np.flatnonzero(mask)
 
 
 def _header_test(layout: Layout) -> Any:
@@ -126,10 +145,14 @@ def _references(sheet: Sheet, found: dict[str, int], open_facts: dict[str, list[
 
 def _money(sheet: Sheet, found: dict[str, int], open_facts: dict[str, list[int]], layout: Layout) -> None:
     """Money columns that headings leave open, settled by face x price / 100 + accrued = amount on most rows."""
-    for fact in ("bond", "side", "currency", "account", "price", "trade_date", "settlement_date", "status"):
+    for fact in (*DATES, "bond", "side", "currency", "account", "price", "status", "accrued", "fees", "principal", "yield", "accrued_days"):
         places = [p for p in open_facts.get(fact, []) if p not in found.values()]
-        if len(places) == 1:
+        if fact in found or not places:
+            continue
+        if len(places) == 1 or all(sheet.raw.columns[p].equals(sheet.raw.columns[places[0]]) for p in places):
             found[fact] = places[0]
+        else:
+            _ask_which(sheet, fact, places)
     for fact in ("face", "settlement_amount"):
         places = [p for p in open_facts.get(fact, []) if p not in found.values()]
         if fact in found or not places:
@@ -141,11 +164,16 @@ def _money(sheet: Sheet, found: dict[str, int], open_facts: dict[str, list[int]]
         if len(fitting) == 1:
             found[fact] = fitting[0]
         elif len(places) > 1:
-            words = " and ".join(f"'{sheet.raw.headings[p]}'" for p in places)
-            reason = f"could be the {fact.replace('_', ' ')} in more than one column ({words}); say which in the window or in a layout file."
-            raise unreadable(sheet.raw.file, reason, "ambiguous-column", sheet.raw.header_line)
+            _ask_which(sheet, fact, places)
         elif fact == "settlement_amount":
             found[fact] = places[0]
+
+
+def _ask_which(sheet: Sheet, fact: str, places: Sequence[int]) -> None:
+    """Refuses a file in which several columns could be one fact."""
+    words = " and ".join(f"'{sheet.raw.headings[p]}'" for p in places)
+    reason = f"could be the {fact.replace('_', ' ')} in more than one column ({words}); say which in the window or in a layout file."
+    raise unreadable(sheet.raw.file, reason, "ambiguous-column", sheet.raw.header_line)
 
 
 def _floats(sheet: Sheet, place: int, mark: str, price: bool = False) -> np.ndarray:
@@ -170,7 +198,7 @@ def _fits(sheet: Sheet, found: dict[str, int], layout: Layout) -> bool:
 
 def _decimal(sheet: Sheet, columns: dict[str, int]) -> str:
     """The file's decimal mark, from all its figures together."""
-    proven: set[str] = set()
+    proven: Counter[str] = Counter()
     undecided: list[int] = []
     for fact in NUMBERS:
         if fact in columns:
@@ -178,17 +206,17 @@ def _decimal(sheet: Sheet, columns: dict[str, int]) -> str:
             if fact == "price":
                 texts = texts.filter(pc.invert(pc.match_substring_regex(texts, "[-/':+]")))
             found, open_ = cells.mark_evidence(texts)
-            proven |= found
+            proven += found
             if open_:
                 undecided.append(columns[fact])
-    if len(proven) == 2:
+    if proven and not cells.settled(proven):
         reason = "writes decimals with a point in some figures and with a comma in others; name the decimal mark in a layout file."
         raise unreadable(sheet.raw.file, reason, "ambiguous-decimal", sheet.raw.header_line)
     if undecided and not proven:
         heading = sheet.raw.headings[undecided[0]]
         reason = f"leaves it open whether 1.234 is one thousand or one and a bit (column {heading}); name the decimal mark in a layout file."
         raise unreadable(sheet.raw.file, reason, "ambiguous-decimal", sheet.raw.header_line)
-    return next(iter(proven), ".")
+    return cells.settled(proven) or "."
 
 
 def _order(sheet: Sheet, columns: dict[str, int]) -> str:
@@ -197,9 +225,9 @@ def _order(sheet: Sheet, columns: dict[str, int]) -> str:
     every = [text for values in texts.values() for text in values]
     if not cells.has_slashed(every):
         return ""
-    proven = cells.slashed(every)
-    if len(proven) == 1:
-        return next(iter(proven))
+    order = cells.settled(cells.slashed(every))
+    if order:
+        return order
     reason = "has dates in which day and month cannot be told apart; name the date style in a layout file, such as date = \"%d/%m/%Y\"."
     raise unreadable(sheet.raw.file, reason, "ambiguous-dates", sheet.raw.header_line, next(iter(every), ""))
 
@@ -297,7 +325,7 @@ def _bonds(sheet: Sheet, style: Style, known: Known) -> Words:
 
 
 def _currencies(sheet: Sheet, style: Style, bond: Words, known: Known) -> Words:
-    told = sheet.text(style.columns.get("currency"))
+    told = _replaced(sheet, style, "currency")
     unknown = np.array([not known_currency(text) for text in told.values.to_pylist()] + [False])[told.codes]
     sheet.reject(unknown, style.columns.get("currency"), "currency", "is not a currency of ISO 4217; correct the code.", "bad-currency")
     row_of = np.full(len(known.bonds["bond"].values) + 1, -1, np.int64)

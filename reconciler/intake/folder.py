@@ -104,22 +104,24 @@ class _Desk:
         problem = failure.problem
         self.problems.append(problem)
         self.rejects.append(problem)
-        rows = _rough_rows(path, problem.code)
+        rows = _rough_rows(path, problem)
         self.files.append(File(problem.file, "", 0, rows, layout="not read"))
         zero, count = np.zeros(1, np.int64), np.array([rows])
         self.totals.append(table(TOTALS, file=[problem.file], currency=[""], rows_read=count, rows_used=zero, rows_rejected=count,
                                  rows_set_aside=zero, amount_read=zero, amount_used=zero, amount_rejected=zero, amount_set_aside=zero))  # fmt: skip
 
 
-def _rough_rows(path: Path, code: str) -> int:
-    if code in ("binary-file", "empty-file", "file-vanished", "file-locked", "long-line", "header-only"):
+def _rough_rows(path: Path, problem: Problem) -> int:
+    """Lines below the headings that are not blank; all but one where the headings are not known."""
+    if problem.code in ("binary-file", "empty-file", "file-vanished", "file-locked", "long-line", "header-only"):
         return 0
     try:
-        data = path.read_bytes()
+        lines = path.read_bytes().split(b"\n")
     except OSError:
         return 0
-    lines = data.count(b"\n") + (not data.endswith(b"\n"))
-    return max(lines - 1, 0)
+    known = problem.code in ("missing-column", "ambiguous-column", "ambiguous-decimal", "ambiguous-dates", "column-twice")
+    below = lines[problem.line :] if known and problem.line else lines[1:]
+    return sum(1 for line in below if line.strip(b" \r\t;,|"))
 
 
 def read(folder: Path, progress: Progress | None = None, layouts_from: Sequence[Path] = ()) -> Morning:
@@ -203,7 +205,11 @@ def _confirmations(
     read_in: list[tuple[Table, Any, Any, dict[str, Any]]] = []
     place = folder / "confirmations"
     for path in sorted(place.iterdir()) if place.is_dir() else []:
-        if path.suffix.lower() not in (".csv", ".txt", ".tsv") or path.name.startswith("."):
+        if path.name.startswith(".") or path.is_dir():
+            continue
+        if path.suffix.lower() not in (".csv", ".txt", ".tsv"):
+            reason = "is not a CSV file and was not read; export it as CSV."
+            desk.problems.append(Problem(f"confirmations/{path.name}", 0, "", "", reason, "not-csv"))
             continue
         try:
             found, sheet, style, extras = confirmations.read(path, f"confirmations/{path.name}", known, stock)

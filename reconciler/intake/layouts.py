@@ -62,6 +62,7 @@ def plain(heading: str) -> str:
     text = unicodedata.normalize("NFKC", heading).replace("\ufeff", "")
     text = re.sub(r"(?<=[a-z])(?=[A-Z])", " ", text)
     text = text.casefold().replace("ä", "ae").replace("ö", "oe").replace("ü", "ue").replace("ß", "ss")
+    text = "".join(sign for sign in unicodedata.normalize("NFKD", text) if not unicodedata.combining(sign))
     return " ".join(re.sub(r"[^0-9a-z]+", " ", text).split())
 
 
@@ -156,10 +157,20 @@ def from_toml(path: Path, name: str) -> tuple[Layout | None, list[Problem]]:
         bad("side_told_by", data["side_told_by"], 'must be "desk" or "broker".')
     if not isinstance(data.get("skip_rows", 0), int):
         bad("skip_rows", data["skip_rows"], "must be a whole number.")
+    for key, kind, words in (("columns", str, "texts in quotes"), ("values", dict, "tables of their own"), ("scale", int, "whole numbers")):
+        part = data.get(key, {})
+        if not isinstance(part, dict) or any(not isinstance(value, kind) or isinstance(value, bool) for value in part.values()):
+            bad(key, part, f"must be a table whose values are {words}.")
+            data[key] = {}
+    for fact, table in data.get("values", {}).items():
+        if not all(isinstance(value, str) for value in table.values()):
+            bad(f"values.{fact}", table, "must turn texts into texts, such as K = \"buy\".")
+    if any(isinstance(number, int) and number <= 0 for number in data.get("scale", {}).values()):
+        bad("scale", data["scale"], "must hold numbers above zero.")
     for fact in sorted(set(data.get("columns", {})) - set(FACTS)):
         bad(f"columns.{fact}", data["columns"][fact], f"is not one of our facts; use one of {', '.join(FACTS)}.")
     try:
-        re.compile(data.get("footer", ""))
+        re.compile(data["footer"] if isinstance(data.get("footer"), str) else "")
     except re.error:
         bad("footer", data["footer"], "is not a pattern that can be used.")
     if problems:

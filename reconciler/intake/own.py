@@ -48,6 +48,7 @@ class Own:
             name,
             is_header=lambda row: len(names & {cell.strip().lower() for cell in row}) >= min(2, len(needed)),
             is_footer=is_footer,
+            settle=f"its first line must name its columns, among them {', '.join(needed)}",
         )
         self.sheet = Sheet(raw)
         self.notes: list[Problem] = []
@@ -174,16 +175,33 @@ def tickets(path: Path, bonds: Table) -> tuple[Table, Own]:
         own.need(name, columns[name].known())
     own.need("side", columns["side"] != 0)
     own.need("face", columns["face_minor"] != MISSING)
-    superseded(own.sheet, columns, ("ticket",))
+    superseded(own, columns, ("ticket",))
     return own.table(TICKETS, columns), own
 
 
 _AS_TOLD = ("price", "accrued", "fees", "settlement_amount", "face", "yield")
 
 
-def superseded(sheet: Sheet, columns: Mapping[str, Any], key: Sequence[str]) -> None:
-    """Of several rows with one key, cancelled beats amended beats new; of equal standing the first by content is kept."""
-    sheet.set_aside(losing(columns, sheet.used(), key))
+def superseded(own: Own, columns: Mapping[str, Any], key: Sequence[str]) -> None:
+    """Of several rows with one key, cancelled beats amended beats new; of equal standing the first by content is kept.
+
+    Rows of equal standing that tell different facts are noted: which of them holds is for a person to say.
+    """
+    sheet = own.sheet
+    gone = losing(columns, sheet.used(), key)
+    sheet.set_aside(gone)
+    if not len(gone):
+        return
+    name = key[-1]
+    kept = {int(columns[name].codes[row]): row for row in sheet.used().tolist()}
+    content = [_ranked(column) for fact, column in sorted(columns.items())]
+    for row in gone.tolist():
+        other = kept.get(int(columns[name].codes[row]))
+        if other is None or columns["status"][row] != columns["status"][other]:
+            continue
+        if any(column[row] != column[other] for column in content):
+            reason = f"stands in more than one row of equal standing with different facts; the row in line {sheet.raw.lines[other]} is used."
+            own.notes.append(Problem(sheet.raw.file, int(sheet.raw.lines[row]), name, columns[name].text(row), reason, "told-apart"))
 
 
 def losing(columns: Mapping[str, Any], rows: np.ndarray, key: Sequence[str], keep_equal: bool = False) -> np.ndarray:

@@ -149,16 +149,18 @@ def load(
     skip_rows: int | None = None,
     is_header: Callable[[Sequence[str]], bool] = lambda cells: True,
     is_footer: Callable[[Sequence[str]], bool] = lambda cells: False,
+    settle: str = "settle its layout in the window or add a layout file",
 ) -> Raw:
     """Reads one file; raises Unreadable with a sentence when nothing can be had from it."""
     data = content(path, name)
     check_lines(data, name)
     text, found = decode(data, name, encoding)
-    head = text[: 64 * LONGEST_LINE // 100].splitlines()[:60]
+    # lines end at line feeds alone: a form feed inside a title is no new line to anybody's editor
+    head = [line.removesuffix("\r") for line in text[: 64 * LONGEST_LINE // 100].split("\n")[:60]]
     if head and head[0].lower().startswith("sep=") and len(head[0]) == 5:
         delimiter, skip_rows = head[0][4], (skip_rows or 0) + 1
     mark = delimiter or delimiter_of(head)
-    header = _header_line(head, mark, skip_rows, is_header, name)
+    header = _header_line(head, mark, skip_rows, is_header, name, settle)
     headings = tuple(cell.strip() for cell in next(csv.reader([head[header]], delimiter=mark)))
     raw = None
     if found == "utf-8":
@@ -171,7 +173,7 @@ def load(
 
 
 def _header_line(
-    head: Sequence[str], mark: str, skip: int | None, is_header: Callable[[Sequence[str]], bool], name: str
+    head: Sequence[str], mark: str, skip: int | None, is_header: Callable[[Sequence[str]], bool], name: str, settle: str
 ) -> int:
     if skip is not None:
         if skip >= len(head):
@@ -181,7 +183,7 @@ def _header_line(
         cells = next(csv.reader([line], delimiter=mark), [])
         if is_header(cells):
             return number
-    raise unreadable(name, "has no line of headings that is known; settle its layout in the window or add a layout file.", "no-header")
+    raise unreadable(name, f"has no line of headings that is known; {settle}.", "no-header")
 
 
 def _fast(

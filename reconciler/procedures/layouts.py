@@ -9,6 +9,7 @@ from __future__ import annotations
 
 import re
 import tempfile
+from collections import Counter
 from collections.abc import Collection, Mapping, Sequence
 from dataclasses import dataclass
 from pathlib import Path
@@ -227,14 +228,15 @@ _DATES = ("trade_date", "settlement_date")
 def _mark(assignment: Mapping[str, str], columns: Mapping[str, pa.Array], options: Mapping[str, str]) -> tuple[str, bool]:
     if options.get("decimal"):
         return options["decimal"], False
-    proven: set[str] = set()
+    proven: Counter[str] = Counter()
     undecided = False
     for heading, fact in assignment.items():
         if fact in _NUMBERS and heading in columns:
             found, left = cells.mark_evidence(columns[heading])
-            proven |= found
+            proven += found
             undecided |= left
-    return (next(iter(proven)), False) if len(proven) == 1 else (".", bool(proven) or undecided)
+    mark = cells.settled(proven)
+    return (mark, False) if mark else (".", bool(proven) or undecided)
 
 
 def _order(assignment: Mapping[str, str], columns: Mapping[str, pa.Array], options: Mapping[str, str]) -> tuple[str, bool]:
@@ -242,8 +244,8 @@ def _order(assignment: Mapping[str, str], columns: Mapping[str, pa.Array], optio
             for text in columns[heading].to_pylist()]  # fmt: skip
     if options.get("date") or not cells.has_slashed(told):
         return "", False
-    proven = cells.slashed(told)
-    return (next(iter(proven)), False) if len(proven) == 1 else ("", True)
+    order = cells.settled(cells.slashed(told))
+    return order, not order
 
 
 def _read(

@@ -67,6 +67,17 @@ def test_cancelled_beats_amended_beats_new(tmp_path: Path) -> None:
     ties_out(morning)
 
 
+def test_two_tickets_of_equal_standing_are_noted(tmp_path: Path) -> None:
+    folder = mornings.sound(tmp_path)
+    lines = mornings.TICKETS.splitlines()
+    (folder / "tickets.csv").write_text("\n".join([*lines, lines[1].replace("99.5", "98.5"), lines[2]]) + "\n")
+    morning = intake.read(folder)
+    assert len(morning.tickets) == 3
+    # the exact repeat is set aside in silence, the other one is for a person to settle
+    assert [(problem.code, problem.value) for problem in morning.problems] == [("told-apart", "T-1")]
+    ties_out(morning)
+
+
 Spoil = Callable[[Path], None]
 
 
@@ -195,3 +206,54 @@ def test_a_confirmation_is_cancelled_from_another_file(tmp_path: Path) -> None:
     assert sorted(morning.confirmations["broker_reference"].to_list()) == ["B1", "B2"]
     assert int(morning.totals["rows_set_aside"].sum()) == 3
     ties_out(morning)
+
+
+def test_a_form_feed_in_a_title_costs_no_row(tmp_path: Path) -> None:
+    folder = mornings.sound(tmp_path)
+    (folder / ORRIN).write_text(mornings.ORRIN.replace("printed", "printed\x0c on\x85 page"), encoding="utf-8")
+    morning = intake.read(folder)
+    assert len(morning.confirmations) == 3
+    ties_out(morning)
+
+
+def test_blank_rows_headings_again_and_footers_in_between(tmp_path: Path) -> None:
+    folder = mornings.sound(tmp_path)
+    lines = mornings.ORRIN.splitlines()
+    (folder / ORRIN).write_text("\n".join([*lines[:5], ",,,,,,,,,,,", lines[3], *lines[5:]]) + "\n")
+    morning = intake.read(folder)
+    assert len(morning.confirmations) == 3 and not len(morning.rejects)
+    ties_out(morning)
+
+
+def test_two_headings_for_one_day_are_asked_about(tmp_path: Path) -> None:
+    folder = mornings.sound(tmp_path)
+    text = mornings.ORRIN.replace("Currency", "Settlement Date").replace(",GBP", ",31/03/2026").replace(",JPY", ",31/03/2026")
+    (folder / ORRIN).write_text(text)
+    morning = intake.read(folder)
+    assert [problem.code for problem in morning.problems] == ["ambiguous-column"]
+    assert "settlement date" in morning.problems[0].reason
+    rows = dict(zip(morning.totals["file"].to_list(), morning.totals["rows_read"].tolist(), strict=True))
+    # title lines are not counted
+    assert rows[ORRIN] == 2
+    ties_out(morning)
+
+
+def test_a_figure_in_another_style_costs_its_own_row(tmp_path: Path) -> None:
+    folder = mornings.sound(tmp_path)
+    head, rows = mornings.ORRIN.splitlines()[:4], mornings.ORRIN.splitlines()[4:]
+    many = [rows[0].replace("B1", f"B{n}") for n in range(10, 40)]
+    bad = rows[0].replace('"514,042.20"', '"514.042,20"').replace("B1", "B99")
+    (folder / ORRIN).write_text("\n".join([*head, *many, bad]) + "\n")
+    morning = intake.read(folder)
+    assert len(morning.confirmations) == 31
+    assert [(r["column"], r["value"]) for r in (morning.rejects.row(i) for i in range(len(morning.rejects)))] == [
+        ("Settlement Amount", "514.042,20")
+    ]
+    ties_out(morning)
+
+
+def test_a_spreadsheet_among_the_confirmations_is_named(tmp_path: Path) -> None:
+    folder = mornings.sound(tmp_path)
+    (folder / "confirmations" / "orrin_teale.xlsx").write_bytes(b"PK")
+    morning = intake.read(folder)
+    assert [(problem.code, problem.file) for problem in morning.problems] == [("not-csv", "confirmations/orrin_teale.xlsx")]
