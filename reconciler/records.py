@@ -168,12 +168,6 @@ def _added(values: pa.Array, more: pa.Array) -> tuple[np.ndarray, pa.Array]:
     return found[place], pa.concat_arrays([values, distinct.take(pa.array(new))]) if len(new) else values
 
 
-def same_text(one: Words, other: Words) -> np.ndarray:
-    """True where both rows told the same, non-blank text."""
-    a, b = unify(one, other)
-    return (a.codes == b.codes) & (a.codes >= 0)
-
-
 @dataclass(frozen=True)
 class Table:
     """Columns of one length, by name. Never edited in place."""
@@ -255,6 +249,7 @@ BREAK_KINDS = (
 )  # fmt: skip
 
 CERTAINTIES = ("proved", "likely", "open")
+"""What the certainty of a break's cause can be."""
 
 BONDS: dict[str, str] = {
     # as told in bonds.csv, blanks not yet filled from the market (bonds.terms does that)

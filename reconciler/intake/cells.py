@@ -11,7 +11,7 @@ from __future__ import annotations
 import re
 import unicodedata
 from collections import Counter
-from collections.abc import Callable, Sequence
+from collections.abc import Callable, Iterable, Sequence
 from dataclasses import dataclass
 from decimal import Decimal, InvalidOperation
 
@@ -293,6 +293,24 @@ def slashed(texts: Sequence[str]) -> Counter[str]:
             if first != second:
                 proven["dmy" if first else "mdy"] += 1
     return proven
+
+
+def marks(columns: Iterable[tuple[str, pa.Array]]) -> tuple[Counter[str], list[str]]:
+    """Evidence for the decimal mark from all figures of a file together: proofs, and the facts whose columns leave it open.
+
+    `columns` are (fact, texts); prices written in 32nds or fractions say nothing about decimals.
+    """
+    proven: Counter[str] = Counter()
+    left_open = []
+    for fact, column in columns:
+        texts = trimmed(column)
+        if fact == "price":
+            texts = texts.filter(pc.invert(pc.match_substring_regex(texts, "[-/':+]")))
+        found, undecided = mark_evidence(texts)
+        proven += found
+        if undecided:
+            left_open.append(fact)
+    return proven, left_open
 
 
 def settled(proven: Counter[str]) -> str:

@@ -6,7 +6,6 @@ the file does not prove is a question for the user (one clear sentence, the whol
 
 from __future__ import annotations
 
-from collections import Counter
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
 from pathlib import Path
@@ -198,22 +197,12 @@ def _fits(sheet: Sheet, found: dict[str, int], layout: Layout) -> bool:
 
 def _decimal(sheet: Sheet, columns: dict[str, int]) -> str:
     """The file's decimal mark, from all its figures together."""
-    proven: Counter[str] = Counter()
-    undecided: list[int] = []
-    for fact in NUMBERS:
-        if fact in columns:
-            texts = cells.trimmed(sheet.column(columns[fact]))
-            if fact == "price":
-                texts = texts.filter(pc.invert(pc.match_substring_regex(texts, "[-/':+]")))
-            found, open_ = cells.mark_evidence(texts)
-            proven += found
-            if open_:
-                undecided.append(columns[fact])
+    proven, undecided = cells.marks((fact, sheet.column(columns[fact])) for fact in NUMBERS if fact in columns)
     if proven and not cells.settled(proven):
         reason = "writes decimals with a point in some figures and with a comma in others; name the decimal mark in a layout file."
         raise unreadable(sheet.raw.file, reason, "ambiguous-decimal", sheet.raw.header_line)
     if undecided and not proven:
-        heading = sheet.raw.headings[undecided[0]]
+        heading = sheet.raw.headings[columns[undecided[0]]]
         reason = f"leaves it open whether 1.234 is one thousand or one and a bit (column {heading}); name the decimal mark in a layout file."
         raise unreadable(sheet.raw.file, reason, "ambiguous-decimal", sheet.raw.header_line)
     return cells.settled(proven) or "."

@@ -9,7 +9,6 @@ from __future__ import annotations
 
 import re
 import tempfile
-from collections import Counter
 from collections.abc import Collection, Mapping, Sequence
 from dataclasses import dataclass
 from pathlib import Path
@@ -20,6 +19,7 @@ import pyarrow as pa
 
 from reconciler import settings, texts
 from reconciler.intake import cells, layouts
+from reconciler.intake.confirmations import DATES, NUMBERS
 from reconciler.intake.folder import shelf
 from reconciler.intake.layouts import Layout
 from reconciler.intake.reading import Raw, Unreadable, content, load
@@ -221,26 +221,18 @@ def _doubts(assignment: Mapping[str, str]) -> list[str]:
     return doubts
 
 
-_NUMBERS = ("face", "accrued", "principal", "fees", "settlement_amount", "yield")
-_DATES = ("trade_date", "settlement_date")
 
 
 def _mark(assignment: Mapping[str, str], columns: Mapping[str, pa.Array], options: Mapping[str, str]) -> tuple[str, bool]:
     if options.get("decimal"):
         return options["decimal"], False
-    proven: Counter[str] = Counter()
-    undecided = False
-    for heading, fact in assignment.items():
-        if fact in _NUMBERS and heading in columns:
-            found, left = cells.mark_evidence(columns[heading])
-            proven += found
-            undecided |= left
+    proven, undecided = cells.marks((fact, columns[h]) for h, fact in assignment.items() if fact in NUMBERS and h in columns)
     mark = cells.settled(proven)
-    return (mark, False) if mark else (".", bool(proven) or undecided)
+    return (mark, False) if mark else (".", bool(proven) or bool(undecided))
 
 
 def _order(assignment: Mapping[str, str], columns: Mapping[str, pa.Array], options: Mapping[str, str]) -> tuple[str, bool]:
-    told = [text for heading, fact in assignment.items() if fact in _DATES and heading in columns
+    told = [text for heading, fact in assignment.items() if fact in DATES and heading in columns
             for text in columns[heading].to_pylist()]  # fmt: skip
     if options.get("date") or not cells.has_slashed(told):
         return "", False
@@ -264,7 +256,7 @@ def _read(
     if fact == "accrued_days":
         found = cells.wholes(column)
         return _values(found, texts.whole(found.values))
-    if fact in _DATES:
+    if fact in DATES:
         found = cells.dates(column, order, options.get("date", ""))
         return _values(found, [texts.long_date(day) for day in found.values])
     if fact == "side":

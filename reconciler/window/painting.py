@@ -15,7 +15,6 @@ from reconciler.window.theme import MEDIUM, SEMIBOLD, theme
 
 _RIGHT = Qt.AlignmentFlag.AlignRight | Qt.AlignmentFlag.AlignVCenter
 _LEFT = Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignVCenter
-_CENTRE = Qt.AlignmentFlag.AlignCenter
 _ELIDE = Qt.TextElideMode.ElideRight
 PADDING = 8
 

@@ -14,7 +14,6 @@ import numpy as np
 from reconciler.breaks.causes.readings import READINGS
 from reconciler.breaks.causes.slips import SLIPS
 from reconciler.breaks.causes.variants import FACE_SCALE, FEE_TAX, FEES_OUT, FEES_TWICE, Cause
-from reconciler.money import MISSING
 
 MISTYPED = Cause("one digit mistyped", "slip", "Ask for the figure to be corrected.", 0.1)
 ONE_SIDED = Cause("fees on one side only", "fees", "Agree whether the fees were dealt; they stand on one side only.", 0.8)
@@ -112,8 +111,3 @@ def _shorter(whole: str, fraction: str) -> Iterator[tuple[Decimal, bool]]:
         twice = (at > 0 and beside[at - 1] == sign) or (at + 1 < len(beside) and beside[at + 1] == sign)
         if left.strip("."):
             yield Decimal(left.strip(".") or "0"), twice
-
-
-def known(number: int) -> bool:
-    """Whether the figure was told."""
-    return number != MISSING

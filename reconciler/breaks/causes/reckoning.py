@@ -15,7 +15,7 @@ import numpy as np
 
 from reconciler.bonds import accrual, settlement
 from reconciler.bonds.terms import Terms
-from reconciler.breaks.causes.cases import COUPON, NAT, REDEMPTION, TRADE, Cases
+from reconciler.breaks.causes.cases import COUPON, REDEMPTION, TRADE, Cases
 from reconciler.breaks.causes.variants import Payment, sums
 from reconciler.money import MISSING, half_up
 
@@ -135,8 +135,3 @@ def pay(facts: Facts, main: Array | None = None, interest: tuple[Array, Array] |
         amount=sums(facts.kind, facts.side, main, minor, fees),
         date=facts.date,
     )
-
-
-def no_dates(length: int) -> Array:
-    """Dates that are not known."""
-    return np.full(length, NAT)

@@ -14,10 +14,7 @@ from dataclasses import dataclass, replace
 import numpy as np
 
 from reconciler.breaks.causes.cases import COUPON, REDEMPTION, TRADE
-from reconciler.money import MISSING, down, half_up
-
-HUNDRED = 100 * 10**12
-"""Denominator of face times price per 100 times 10^12."""
+from reconciler.money import MISSING, half_up
 
 
 @dataclass(frozen=True)
@@ -29,19 +26,6 @@ class Cause:
     family: str
     next_step: str
     weight: float = 0.5
-
-
-@dataclass(frozen=True)
-class Accrual:
-    """Accrued interest as a fraction of the face: top/bottom (int64, per unit of face), days, and the date it runs to.
-
-    `minor` holds the accrued already rounded as the terms say on the case's own face, MISSING where it must be reckoned anew.
-    """
-
-    days: np.ndarray
-    top: np.ndarray
-    bottom: np.ndarray
-    date: np.ndarray
 
 
 @dataclass(frozen=True)
@@ -65,7 +49,7 @@ class Payment:
 
 
 Part = str
-PARTS: tuple[Part, ...] = ("face", "price", "accrual", "fees", "whole")
+"""face, price, accrual, fees, whole; `told` for the facts as they are."""
 
 
 @dataclass(frozen=True)
@@ -106,7 +90,6 @@ WHOLE_UNITS = Cause("cut to whole units", "rounding", "Ask for the fraction, or 
 CUT = Cause("cut off instead of rounded", "rounding", "Agree the rounding rule; the difference is one unit.", 0.3)
 TAX = Cause("tax withheld", "tax", "Check the certificate on file and raise a reclaim.", 1.0)
 TAX_ONLY = Cause("tax paid back", "tax", "Link the entry to the payment it was withheld from.", 0.2)
-DENOMINATION = Cause("rounded per denomination", "rounding", "Agree the rounding rule of the paying agent.", 0.4)
 CHARGE = Cause("bank charge deducted", "charge", "Ask for the advice of charges; book it or claim it back.", 0.15)
 
 TAX_RATES = (5.0, 10.0, 12.0, 12.5, 15.0, 15.315, 18.0, 19.0, 20.0, 24.0, 25.0, 26.0, 26.375, 27.5, 28.0, 30.0, 35.0)
@@ -238,8 +221,3 @@ FACE: tuple[Variant, ...] = (
     Variant(FACE_SCALE, "face", "the face is a million times too large", _scaled(10**6, 1), _ALL, 0.3),
     Variant(FACE_SCALE, "face", "the face is a millionth", _scaled(1, 10**6), _ALL, 0.3),
 )
-
-
-def truncated(face: np.ndarray, top: np.ndarray, bottom: np.ndarray) -> np.ndarray:
-    """Face times a fraction, cut off toward zero."""
-    return down([face, top], [bottom])
