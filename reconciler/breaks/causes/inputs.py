@@ -19,6 +19,19 @@ MISTYPED = Cause("one digit mistyped", "slip", "Ask for the figure to be correct
 ONE_SIDED = Cause("fees on one side only", "fees", "Agree whether the fees were dealt; they stand on one side only.", 0.8)
 REVERSED = Cause("side reversed", "side", "Ask who bought; one of the two has the side the wrong way round.", 0.8)
 
+_LEVIES = (5, 7, 8, 10, 15, 19, 20, 21, 22, 23, 25)
+_TURNED = READINGS[:6]
+_UNITS = (1000, 10**6)
+_WRITTEN = len(SLIPS) + 1
+
+TRIES = {
+    "price": len(READINGS) + len(_TURNED) + _WRITTEN,
+    "face": len(_UNITS) + _WRITTEN,
+    "fees": 4 + len(_LEVIES) + _WRITTEN,
+    "side": 1,
+}
+"""How many ways of going wrong each fact is held against."""
+
 Explanation = tuple[Cause, str, float]
 """The cause, its wording, and how common it is."""
 
@@ -30,7 +43,7 @@ def price(right: int, told: int) -> Iterator[Explanation]:
         if int(reading.read(one)[0]) == told:
             yield Cause(reading.name, "price", "Ask for the price as dealt, written in decimals.", 0.8), reading.wording, reading.weight
     back = np.array([told], np.int64)
-    for reading in READINGS[:6]:
+    for reading in _TURNED:
         if int(reading.read(back)[0]) == right:
             words = f"the price was dealt as told here and {reading.wording} on the other side"
             yield Cause(reading.name, "price", "Ask for the price as dealt, written in decimals.", 0.8), words, reading.weight * 0.1
@@ -39,7 +52,7 @@ def price(right: int, told: int) -> Iterator[Explanation]:
 
 def face(right: int, told: int, digits: int) -> Iterator[Explanation]:
     """Why a face (minor units) was told as another."""
-    for times in (1000, 10**6):
+    for times in _UNITS:
         if told * times == right or right * times == told:
             size = "larger" if told > right else "smaller"
             yield FACE_SCALE, f"the face is {times:,} times {size}, as if told in another unit", 1.0
@@ -56,7 +69,7 @@ def fees(right: int, told: int, digits: int) -> Iterator[Explanation]:
         yield FEES_TWICE, "the fees are counted twice", 1.0
     if right and told == -right:
         yield ONE_SIDED, "the fees carry the other sign", 1.0
-    for rate in (5, 7, 8, 10, 15, 19, 20, 21, 22, 23, 25):
+    for rate in _LEVIES:
         if right and (right * (100 + rate) * 2 + 100) // 200 == told:
             yield FEE_TAX, f"a levy of {rate} % is put on the fees", 0.5
     yield from written(Decimal(right).scaleb(-digits), Decimal(told).scaleb(-digits), "fees")

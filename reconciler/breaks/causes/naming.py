@@ -52,7 +52,7 @@ def name_causes(items: Table, tickets: Table, confirmations: Table, terms: Terms
     place = np.where((place < len(key)) & (key[np.minimum(place, len(key) - 1)] == wanted), place, -1)
     kinds = breaks["break"].to_list()
     amounts, tried = _amounts(cases, terms, items["item"].rank()[cases.item_row])
-    days = _dates(cases, terms)
+    days, days_tried = _dates(cases, terms)
     found: dict[int, Sequence[Found]] = {}
     counts: dict[int, int] = {}
     for row, (kind, case) in enumerate(zip(kinds, place.tolist(), strict=True)):
@@ -61,9 +61,9 @@ def name_causes(items: Table, tickets: Table, confirmations: Table, terms: Terms
         if kind in _AMOUNTS:
             found[row], counts[row] = amounts.get(case, ()), int(tried[case])
         elif kind in ("settlement date", "payment date"):
-            found[row], counts[row] = days.get(case, ()), 40
+            found[row], counts[row] = days.get(case, ()), days_tried
         elif kind in ("price", "face", "fees", "side"):
-            found[row], counts[row] = _input(cases, case, kind), 60
+            found[row], counts[row] = _input(cases, case, kind), inputs.TRIES[kind]
     named, explained = _written(breaks, found, counts)
     return across(items, named), explained
 
@@ -162,21 +162,23 @@ def _sentence(part: Search, one: int, hypothesis: Hypothesis) -> str:
     return f"{party} told {told}, the terms give {right}; the told figure comes out to the last digit if {words}{detail}."
 
 
-def _dates(cases: Cases, terms: Terms) -> dict[int, list[Found]]:
+def _dates(cases: Cases, terms: Terms) -> tuple[dict[int, list[Found]], int]:
     told, right = cases.told.date, cases.terms.date
     apart = np.flatnonzero(~np.isnat(told) & ~np.isnat(right) & (told != right))
     if not len(apart):
-        return {}
+        return {}, 0
     some = cases.take(apart)
+    tried = 0
     fits: dict[int, list[tuple[float, int, Found]]] = {}
     for number, (cause, wording, day) in enumerate(dates.explanations(some, terms, right[apart], told[apart])):
+        tried = number + 1
         for one in np.flatnonzero(day == told[apart]).tolist():
             party = _PARTIES[int(some.party[one])]
             why = dates.closed_because(terms, int(some.bond_row[one]), told[apart][one])
             closed = f", which is closed ({why})" if why else ""
             sentence = f"{party} told {told[apart][one]}{closed}, the terms give {right[apart][one]}; the day comes out if {wording}."
             fits.setdefault(int(apart[one]), []).append((-cause.weight, number, (cause.name, "likely", sentence, cause.next_step)))
-    return {case: _unique([found for _w, _n, found in sorted(rows)]) for case, rows in fits.items()}
+    return {case: _unique([found for _w, _n, found in sorted(rows)]) for case, rows in fits.items()}, tried
 
 
 def _unique(rows: list[Found]) -> list[Found]:
